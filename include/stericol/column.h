@@ -219,7 +219,7 @@ STERICOL_API const double *stericol_sweep_result(const stericol_sweep *sweep,
 STERICOL_API const signed char *stericol_sweep_flags(const stericol_sweep *sweep);
 
 /** The stericol_layer_state of each finished column, [count]. */
-STERICOL_API const unsigned char *stericol_sweep_layer_states(const stericol_sweep *sweep, size_t layer);
+STERICOL_API const unsigned char *stericol_sweep_layer_state(const stericol_sweep *sweep, size_t layer);
 
 /** The deepest depth that entered any result of the finished columns, m; NaN when there is none. */
 STERICOL_API double stericol_sweep_deepest(const stericol_sweep *sweep);
