@@ -1,20 +1,21 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /**
  * \file
- * Equations of state of seawater, conversions between the kinds of salinity and temperature, pressure and depth.
+ * Equations of state of seawater, conversions between the kinds of salinity and temperature, pressure and
+ * depth.
  *
- * All functions are pure: no state, no failure, safe in any thread.  NaN is the only missing value: NaN in any
- * input gives NaN in the outputs of that element, and nothing else changes.  Inputs outside the range of an
- * equation are evaluated as they stand, never clamped; stericol_in_valid_range() reports on them.
+ * All functions are pure: no state, no failure, safe in any thread.  NaN is the only missing value: NaN in
+ * any input gives NaN in the outputs of that element, and nothing else changes.  Inputs outside the range of
+ * an equation are evaluated as they stand, never clamped; stericol_in_valid_range() reports on them.
  *
- * Units, unless a function says otherwise: absolute and reference salinity g/kg, practical salinity 1 (PSS-78),
- * temperature degrees Celsius on ITS-90, sea pressure (absolute pressure less 101325 Pa) dbar, specific volume
- * m3/kg, depth m below the surface, latitude degrees.
+ * Units, unless a function says otherwise: absolute and reference salinity g/kg, practical salinity 1
+ * (PSS-78), temperature degrees Celsius on ITS-90, sea pressure (absolute pressure less 101325 Pa) dbar,
+ * specific volume m3/kg, depth m below the surface, latitude degrees.
  *
  * Arrays: `count` elements, one element a point.  An output may be the same array as an input, element for
- * element, but must not overlap one otherwise.  An element's result depends neither on its place in the array nor
- * on `count`.  On processors with fused multiply-add (see stericol_instruction_set()) the results are the same
- * bits whatever the width of the vectors; without, they may differ in the last bits.
+ * element, but must not overlap one otherwise.  An element's result depends neither on its place in the array
+ * nor on `count`.  On processors with fused multiply-add (see stericol_instruction_set()) the results are the
+ * same bits whatever the width of the vectors; without, they may differ in the last bits.
  */
 #ifndef STERICOL_WATER_H
 #define STERICOL_WATER_H
@@ -36,7 +37,8 @@ extern "C" {
 #define STERICOL_STANDARD_SALINITY 35.16504
 /** Reference salinity per unit of practical salinity, g/kg (Millero et al. 2008). */
 #define STERICOL_SALINITY_RATIO (35.16504 / 35.0)
-/** The heat capacity that defines conservative temperature, J/(kg K), exact (IOC Manuals and Guides 56, 2010). */
+/** The heat capacity that defines conservative temperature, J/(kg K), exact (IOC Manuals and Guides 56,
+ * 2010). */
 #define STERICOL_HEAT_CAPACITY 3991.86795711963
 /** 0 degC in kelvin. */
 #define STERICOL_CELSIUS_ZERO 273.15
@@ -70,7 +72,10 @@ typedef struct stericol_water {
 } stericol_water;
 
 /** Initialiser: the polynomial, and the usual round numbers for the linear equation. */
-#define STERICOL_WATER_DEFAULT {STERICOL_EQUATION_TEOS10, 2e-4, 7.5e-4, 1027.0}
+#define STERICOL_WATER_DEFAULT                                                                               \
+    {                                                                                                        \
+        STERICOL_EQUATION_TEOS10, 2e-4, 7.5e-4, 1027.0                                                       \
+    }
 
 /**
  * Specific volume of `count` points at one pressure.
@@ -96,8 +101,8 @@ STERICOL_API void stericol_volume_points(const stericol_water *water, const doub
 /**
  * Specific volume and its first derivatives at one pressure.
  *
- * The derivatives are analytic, each at constant pressure and at constant value of the other variable, both in
- * the equation's own kinds: thermal expansion is volume_temperature / volume, haline contraction
+ * The derivatives are analytic, each at constant pressure and at constant value of the other variable, both
+ * in the equation's own kinds: thermal expansion is volume_temperature / volume, haline contraction
  * -volume_salinity / volume.  At salinity zero EOS-80 and the Gibbs function give their limits from above.
  *
  * \param volume_temperature  [count] out, m3/(kg K)
@@ -115,12 +120,14 @@ STERICOL_API void stericol_volume_points_derivatives(const stericol_water *water
                                                      double *volume_temperature, double *volume_salinity);
 
 /**
- * Whether a point lies where the equation is meant to be used.  It only reports; nothing is changed or refused.
+ * Whether a point lies where the equation is meant to be used.  It only reports; nothing is changed or
+ * refused.
  *
  * EOS-80: 0..42, -2..40 degC, 0..10000 dbar (UNESCO Technical Papers in Marine Science 38, 1981).
- * Gibbs function: 0..42 g/kg, -6..40 degC, 0..10000 dbar (the standard range of IAPWS R13-08 in round numbers).
- * Polynomial and linear: 0..42 g/kg, -3..40 degC, 0..8000 dbar: a box of our own about the waters that the
- * polynomial was fitted to.  Its corners (hot water at great pressure) hold no ocean, and errors grow there.
+ * Gibbs function: 0..42 g/kg, -6..40 degC, 0..10000 dbar (the standard range of IAPWS R13-08 in round
+ * numbers). Polynomial and linear: 0..42 g/kg, -3..40 degC, 0..8000 dbar: a box of our own about the waters
+ * that the polynomial was fitted to.  Its corners (hot water at great pressure) hold no ocean, and errors
+ * grow there.
  *
  * \return false outside, and for any NaN.
  */
@@ -175,8 +182,8 @@ STERICOL_API stericol_volume_and_slopes stericol_specific_volume_and_slopes(doub
  */
 
 /**
- * The Gibbs function g(SA, t, p) and its derivatives; S stands for absolute salinity in g/kg, T for temperature
- * in K, P for pressure in Pa.
+ * The Gibbs function g(SA, t, p) and its derivatives; S stands for absolute salinity in g/kg, T for
+ * temperature in K, P for pressure in Pa.
  */
 typedef struct stericol_gibbs {
     double g;    /**< J/kg */
@@ -202,8 +209,8 @@ STERICOL_API void stericol_gibbs_water(double temperature, double pressure, ster
 /**
  * The saline part of the Gibbs function of seawater (IAPWS R13-08, table 2), arguments as above.
  *
- * At salinity zero every member is zero but three: g_s and g_st are -infinity, which is their limit, and g_sp has
- * a finite value.  A negative salinity gives NaN.
+ * At salinity zero every member is zero but three: g_s and g_st are -infinity, which is their limit, and g_sp
+ * has a finite value.  A negative salinity gives NaN.
  */
 STERICOL_API void stericol_gibbs_saline(double absolute_salinity, double temperature, double pressure,
                                         stericol_gibbs *gibbs);
@@ -227,7 +234,8 @@ typedef struct stericol_properties {
 } stericol_properties;
 
 /**
- * All properties of seawater by the full Gibbs function (IOC Manuals and Guides 56, 2010: sections 2.6 to 2.20).
+ * All properties of seawater by the full Gibbs function (IOC Manuals and Guides 56, 2010: sections 2.6
+ * to 2.20).
  *
  * thermal_expansion   = -(g_TP/g_P) cp0 / [(T0 + theta) g_TT]                      (eq. 2.18.3)
  * haline_contraction  = -g_SP/g_P + g_TP [g_ST - g_S(SA, theta, 0)/(T0 + theta)] / (g_P g_TT)   (eq. 2.19.3)
@@ -243,33 +251,37 @@ STERICOL_API void stericol_seawater_properties(double absolute_salinity, double 
  */
 
 /**
- * Density at one atmosphere and secant bulk modulus (Millero and Poisson 1981, Deep-Sea Research 28A, 625-629;
- * Millero, Chen, Bradshaw and Schleicher 1980, Deep-Sea Research 27A, 255-264; UNESCO Technical Papers in Marine
- * Science 36, 1981), kg/m3.
+ * Density at one atmosphere and secant bulk modulus (Millero and Poisson 1981, Deep-Sea Research 28A,
+ * 625-629; Millero, Chen, Bradshaw and Schleicher 1980, Deep-Sea Research 27A, 255-264; UNESCO Technical
+ * Papers in Marine Science 36, 1981), kg/m3.
  *
  * \param temperature  in situ, degC on IPTS-68
  */
 STERICOL_API double stericol_eos80_density(double practical_salinity, double temperature, double pressure);
 
 /** The secant bulk modulus of the same equation, bar. */
-STERICOL_API double stericol_eos80_bulk_modulus(double practical_salinity, double temperature, double pressure);
+STERICOL_API double stericol_eos80_bulk_modulus(double practical_salinity, double temperature,
+                                                double pressure);
 
 /** Specific volume anomaly: v(S, t, p) - v(35, 0, p), m3/kg. */
-STERICOL_API double stericol_eos80_volume_anomaly(double practical_salinity, double temperature, double pressure);
+STERICOL_API double stericol_eos80_volume_anomaly(double practical_salinity, double temperature,
+                                                  double pressure);
 
 /** Heat capacity at constant pressure, J/(kg K) (UNESCO 44, Fofonoff and Millard 1983, section 5). */
-STERICOL_API double stericol_eos80_heat_capacity(double practical_salinity, double temperature, double pressure);
+STERICOL_API double stericol_eos80_heat_capacity(double practical_salinity, double temperature,
+                                                 double pressure);
 
 /** The same on arrays at one pressure. */
-STERICOL_API void stericol_eos80_heat_capacity_row(double pressure, size_t count, const double *practical_salinity,
+STERICOL_API void stericol_eos80_heat_capacity_row(double pressure, size_t count,
+                                                   const double *practical_salinity,
                                                    const double *temperature, double *heat_capacity);
 
 /** Adiabatic lapse rate, K/dbar (Bryden 1973, Deep-Sea Research 20, 401-408; UNESCO 44, section 6). */
 STERICOL_API double stericol_eos80_lapse_rate(double practical_salinity, double temperature, double pressure);
 
 /**
- * Potential temperature, degC: the lapse rate integrated to the reference pressure in one step of the fourth-order
- * Runge-Kutta method of Gill (UNESCO 44, section 7).
+ * Potential temperature, degC: the lapse rate integrated to the reference pressure in one step of the
+ * fourth-order Runge-Kutta method of Gill (UNESCO 44, section 7).
  */
 STERICOL_API double stericol_eos80_potential_temperature(double practical_salinity, double temperature,
                                                          double pressure, double reference_pressure);
@@ -278,8 +290,8 @@ STERICOL_API double stericol_eos80_potential_temperature(double practical_salini
  * In situ temperature, degC: the t whose potential temperature (reference 0 dbar) by the function above is
  * `potential_temperature`.
  */
-STERICOL_API double stericol_eos80_in_situ_temperature(double practical_salinity, double potential_temperature,
-                                                       double pressure);
+STERICOL_API double stericol_eos80_in_situ_temperature(double practical_salinity,
+                                                       double potential_temperature, double pressure);
 
 /** The same on arrays at one pressure. */
 STERICOL_API void stericol_eos80_potential_temperature_row(double pressure, size_t count,
@@ -334,14 +346,15 @@ STERICOL_API void stericol_practical_salinity_array(size_t count, const double *
 /* ------------------------------------------------------------------------------------------------------------
  * Temperature: in situ, potential (reference 0 dbar), conservative; by the full Gibbs function
  *
- * Potential and in situ temperature have the same entropy; the terms in x^2 ln x are the same on both sides and
- * drop out.  Conservative temperature is potential enthalpy / cp0, where they cancel to 2e-12 J/kg and are left
- * out.  What is left are polynomials, solved by three steps of Newton's method: exact to rounding (1e-12 K) for
- * 0..120 g/kg, -6..40 degC, to 10000 dbar.  Negative salinity gives NaN.
+ * Potential and in situ temperature have the same entropy; the terms in x^2 ln x are the same on both sides
+ * and drop out.  Conservative temperature is potential enthalpy / cp0, where they cancel to 2e-12 J/kg and
+ * are left out.  What is left are polynomials, solved by three steps of Newton's method: exact to rounding
+ * (1e-12 K) for 0..120 g/kg, -6..40 degC, to 10000 dbar.  Negative salinity gives NaN.
  */
 
 /** Potential temperature of a point at `pressure`, degC. */
-STERICOL_API double stericol_potential_temperature(double absolute_salinity, double temperature, double pressure);
+STERICOL_API double stericol_potential_temperature(double absolute_salinity, double temperature,
+                                                   double pressure);
 
 /** In situ temperature at `pressure` of water with this potential temperature, degC. */
 STERICOL_API double stericol_in_situ_temperature(double absolute_salinity, double potential_temperature,
@@ -363,7 +376,8 @@ STERICOL_API double stericol_in_situ_temperature_of_conservative(double absolute
                                                                  double conservative_temperature,
                                                                  double pressure);
 
-/** The same on arrays; what depends on pressure comes at one pressure (`_row`) or at pressure[count] (`_points`). */
+/** The same on arrays; what depends on pressure comes at one pressure (`_row`) or at pressure[count]
+ * (`_points`). */
 STERICOL_API void stericol_conservative_temperature_array(size_t count, const double *absolute_salinity,
                                                           const double *potential_temperature,
                                                           double *conservative_temperature);
@@ -372,17 +386,20 @@ STERICOL_API void stericol_potential_temperature_of_conservative_array(size_t co
                                                                        const double *conservative_temperature,
                                                                        double *potential_temperature);
 STERICOL_API void stericol_potential_temperature_row(double pressure, size_t count,
-                                                     const double *absolute_salinity, const double *temperature,
+                                                     const double *absolute_salinity,
+                                                     const double *temperature,
                                                      double *potential_temperature);
 STERICOL_API void stericol_potential_temperature_points(const double *pressure, size_t count,
                                                         const double *absolute_salinity,
                                                         const double *temperature,
                                                         double *potential_temperature);
-STERICOL_API void stericol_in_situ_temperature_row(double pressure, size_t count, const double *absolute_salinity,
+STERICOL_API void stericol_in_situ_temperature_row(double pressure, size_t count,
+                                                   const double *absolute_salinity,
                                                    const double *potential_temperature, double *temperature);
 STERICOL_API void stericol_in_situ_temperature_points(const double *pressure, size_t count,
                                                       const double *absolute_salinity,
-                                                      const double *potential_temperature, double *temperature);
+                                                      const double *potential_temperature,
+                                                      double *temperature);
 /* In these four the output must not be the salinity array. */
 STERICOL_API void stericol_conservative_temperature_of_in_situ_row(double pressure, size_t count,
                                                                    const double *absolute_salinity,
@@ -427,9 +444,9 @@ STERICOL_API void stericol_temperature_ipts68_array(size_t count, const double *
 STERICOL_API double stericol_gravity(double latitude, double depth);
 
 /**
- * Sea pressure at a depth of the standard ocean, dbar: the p for which the integral of v(35.16504, 0, p') over
- * pressure from 0 to p, times 1e4 Pa/dbar, is g(latitude, 0) (z + 1.13e-7 z^2), by Newton's method on the
- * polynomial's own primitive.  Meant for 0..11000 m.
+ * Sea pressure at a depth of the standard ocean, dbar: the p for which the integral of v(35.16504, 0, p')
+ * over pressure from 0 to p, times 1e4 Pa/dbar, is g(latitude, 0) (z + 1.13e-7 z^2), by Newton's method on
+ * the polynomial's own primitive.  Meant for 0..11000 m.
  */
 STERICOL_API double stericol_sea_pressure(double depth, double latitude);
 
