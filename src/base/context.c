@@ -112,6 +112,15 @@ stericol_status stericol_fail_memory(stericol_context *context, size_t bytes, co
                          "no memory left for %s (%zu bytes)", what, bytes);
 }
 
+stericol_status stericol_fail_again(stericol_context *context, const stericol_context *other)
+{
+    if (context != NULL && context->status == STERICOL_OK) {
+        context->status = other->status;
+        stericol_text_add(&context->message, stericol_text_string(&other->message));
+    }
+    return other->status;
+}
+
 void stericol_notice(stericol_context *context, stericol_notice_level level, const char *file,
                      const char *variable, const char *format, ...)
 {

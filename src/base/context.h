@@ -23,6 +23,9 @@ stericol_status stericol_fail(stericol_context *context, stericol_status status,
 /* As above for memory that could not be had; `bytes` is what was asked for, 0 where not known. */
 stericol_status stericol_fail_memory(stericol_context *context, size_t bytes, const char *what);
 
+/* Records in `context` the failure that `other` holds, with its message, and returns its status. */
+stericol_status stericol_fail_again(stericol_context *context, const stericol_context *other);
+
 /* Sends a notice, "FILE: VARIABLE: text", to the context's receiver. */
 void stericol_notice(stericol_context *context, stericol_notice_level level, const char *file,
                      const char *variable, const char *format, ...) STERICOL_PRINTF(5, 6);
