@@ -11,7 +11,8 @@
 
 typedef struct stericol_cf_units stericol_cf_units;
 
-/* The unit system; one for a run.  STERICOL_FAULT when UDUNITS-2 finds no database. */
+/* The unit system; one for a run.  STERICOL_FAULT when UDUNITS-2 finds no database, STERICOL_MEMORY; *units
+ * is NULL then. */
 stericol_status stericol_cf_units_new(stericol_context *context, stericol_cf_units **units);
 void stericol_cf_units_free(stericol_cf_units *units);
 
