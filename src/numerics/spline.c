@@ -75,16 +75,16 @@ void stericol_spline_free(stericol_spline *spline)
 
 double stericol_spline_value(stericol_spline *spline, double x)
 {
-    double value = NAN;
+    double value = (double)NAN;
     if (gsl_spline_eval_e(spline->curve, x, spline->place, &value) != GSL_SUCCESS)
-        return NAN;
+        return (double)NAN;
     return value;
 }
 
 double stericol_spline_integral(stericol_spline *spline, double a, double b)
 {
-    double value = NAN;
+    double value = (double)NAN;
     if (gsl_spline_eval_integ_e(spline->curve, a, b, spline->place, &value) != GSL_SUCCESS)
-        return NAN;
+        return (double)NAN;
     return value;
 }
