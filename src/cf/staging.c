@@ -53,12 +53,32 @@ stericol_status stericol_cf_staging_fail(stericol_context *context, const steric
                          what, words);
 }
 
+/* Why the folder of the output cannot be used. */
+static stericol_status refuse_folder(stericol_context *context, const stericol_cf_staging *staging,
+                                     const char *folder, int error)
+{
+    switch (error) {
+    case ENOMEM:
+        return stericol_fail_memory(context, 0, "a path");
+    case ENOENT:
+        return stericol_fail(context, STERICOL_OUTPUT, staging->path, NULL, "make the folder first",
+                             "there is no folder %s", folder);
+    case ENOTDIR:
+        return stericol_fail(context, STERICOL_OUTPUT, staging->path, NULL, "give another name",
+                             "%s is not a folder", folder);
+    default:
+        return stericol_cf_staging_fail(context, staging, error, NULL, "its folder cannot be reached");
+    }
+}
+
 /* Folder and target as absolute paths: an absolute path can neither be taken for a URL nor move with the
  * working folder. */
 static stericol_status place(stericol_context *context, stericol_cf_staging *staging)
 {
     const char *path = staging->path, *slash = strrchr(path, '/');
+    stericol_status status = STERICOL_OK;
     stericol_text target = {0};
+    struct stat found;
     char *folder;
 
     folder = slash == NULL   ? stericol_copy_string(".")
@@ -67,23 +87,13 @@ static stericol_status place(stericol_context *context, stericol_cf_staging *sta
     if (folder == NULL)
         return stericol_fail_memory(context, 0, "a path");
     staging->folder = realpath(folder, NULL);
-    if (staging->folder == NULL) {
-        const int error = errno;
-
-        if (error == ENOENT)
-            stericol_fail(context, STERICOL_OUTPUT, path, NULL, "make the folder first",
-                          "there is no folder %s", folder);
-        else if (error == ENOTDIR)
-            stericol_fail(context, STERICOL_OUTPUT, path, NULL, "give another name", "%s is not a folder",
-                          folder);
-        free(folder);
-        if (error == ENOMEM)
-            return stericol_fail_memory(context, 0, "a path");
-        if (error == ENOENT || error == ENOTDIR)
-            return STERICOL_OUTPUT;
-        return stericol_cf_staging_fail(context, staging, error, NULL, "its folder cannot be reached");
-    }
+    if (staging->folder == NULL || stat(staging->folder, &found) != 0)
+        status = refuse_folder(context, staging, folder, errno);
+    else if (!S_ISDIR(found.st_mode))
+        status = refuse_folder(context, staging, folder, ENOTDIR);
     free(folder);
+    if (status != STERICOL_OK)
+        return status;
     stericol_text_format(&target, "%s/%s", strcmp(staging->folder, "/") == 0 ? "" : staging->folder,
                          slash == NULL ? path : slash + 1);
     staging->target = stericol_text_take(&target);
@@ -214,6 +224,25 @@ stericol_status stericol_cf_staging_begin(stericol_context *context, const char 
     return stericol_cf_staging_fail(context, staging, errno, NULL, "no file can be made in its folder");
 }
 
+stericol_status stericol_cf_staging_reserve(stericol_context *context, stericol_cf_staging *staging,
+                                            const char *variable, unsigned long long more)
+{
+    enum { MEGA = 1000000 };
+    stericol_text what = {0};
+    stericol_status status;
+    int error;
+
+    if (!staging->present) /* a signal handler took it */
+        return STERICOL_OK;
+    error = stericol_cf_reserve(staging->handle, &staging->held, more);
+    if (error == 0)
+        return STERICOL_OK;
+    stericol_text_format(&what, "cannot be written, up to %llu MB more may be needed", more / MEGA + 1);
+    status = stericol_cf_staging_fail(context, staging, error, variable, stericol_text_string(&what));
+    stericol_text_free(&what);
+    return status;
+}
+
 static void remove_temporary(stericol_cf_staging *staging)
 {
     if (staging->handle >= 0)
@@ -225,12 +254,14 @@ static void remove_temporary(stericol_cf_staging *staging)
 }
 
 /* The library wrote by name into the very file that was made here, and wrote something. */
-static bool is_ours(const stericol_cf_staging *staging)
+static bool is_ours(const stericol_cf_staging *staging, off_t *size)
 {
     struct stat named, held;
 
-    return stat(staging->temporary, &named) == 0 && fstat(staging->handle, &held) == 0 &&
-           named.st_dev == held.st_dev && named.st_ino == held.st_ino && held.st_size > 0;
+    if (stat(staging->temporary, &named) != 0 || fstat(staging->handle, &held) != 0)
+        return false;
+    *size = held.st_size;
+    return named.st_dev == held.st_dev && named.st_ino == held.st_ino && held.st_size > 0;
 }
 
 /* link() fails where the name is taken, rename() would overwrite; some file systems know no hard links. */
@@ -264,9 +295,10 @@ static void sync_folder(stericol_context *context, const stericol_cf_staging *st
 stericol_status stericol_cf_staging_commit(stericol_context *context, stericol_cf_staging *staging)
 {
     struct stat old;
+    off_t size = 0;
     int error;
 
-    if (!is_ours(staging)) {
+    if (!is_ours(staging, &size)) {
         remove_temporary(staging);
         return stericol_cf_staging_fail(context, staging, 0, NULL,
                                         "the temporary file was removed or changed by someone else");
@@ -274,6 +306,9 @@ stericol_status stericol_cf_staging_commit(stericol_context *context, stericol_c
     error = 0;
     if (staging->replace && stat(staging->target, &old) == 0 &&
         fchmod(staging->handle, old.st_mode & (S_IRWXU | S_IRWXG | S_IRWXO)) != 0)
+        error = errno;
+    /* Gives back what was reserved beyond the end. */
+    if (error == 0 && ftruncate(staging->handle, size) != 0)
         error = errno;
     if (error == 0 && fsync(staging->handle) != 0)
         error = errno;

@@ -22,6 +22,9 @@
  * packed twice. */
 enum { MOST_OPEN_CHUNKS = 8, CACHE_SLOTS = 521, DEFLATE_LEVEL = 1 };
 
+/* HDF5's own structures: what a new file and each dimension, variable or attribute may take, taken amply. */
+enum { FILE_OVERHEAD = 1 << 20, OBJECT_OVERHEAD = 1 << 13 };
+
 typedef struct written_variable {
     char *name;
     int handle;
@@ -29,10 +32,13 @@ typedef struct written_variable {
     size_t rank;
     size_t length[STERICOL_CF_MOST_RANK];
     bool fill;
+    bool touched;     /* something was written */
+    size_t held_back; /* bytes that HDF5 may hold back of it: its chunk cache, or all of it */
 } written_variable;
 
 struct stericol_cf_writer {
     stericol_cf_staging staging;
+    unsigned long long pending; /* bytes that HDF5 may still hold back: caches, headers */
     int handle;
     bool open;
     size_t dimension_count, variable_count;
@@ -124,17 +130,27 @@ static stericol_status translate(stericol_context *context, const stericol_cf_wr
     if (code == NC_EBADNAME || code == NC_ENAMEINUSE || code == NC_EMAXNAME)
         return stericol_fail(context, STERICOL_FAULT, writer->staging.path, variable, "please report this",
                              "is no name that NetCDF takes here (%s)", nc_strerror(code));
-    if (code > 0)
-        error = code;
-    /* HDF5 tries many things: only these say why a write failed. */
-    else if (error != ENOSPC && error != EDQUOT && error != EFBIG && error != EIO)
-        error = 0;
+    /* HDF5 tries many things and NetCDF-C guesses: of errno only these say why a write failed. */
+    if (error != ENOSPC && error != EDQUOT && error != EFBIG && error != EIO)
+        error = code > 0 ? code : 0;
     stericol_text_add(&what, "cannot be written");
     if (error == 0)
         stericol_text_format(&what, " (%s)", nc_strerror(code));
     status =
         stericol_cf_staging_fail(context, &writer->staging, error, variable, stericol_text_string(&what));
     stericol_text_free(&what);
+    return status;
+}
+
+/* Room for `more` bytes that HDF5 will hold back until the end at the latest. */
+static stericol_status reserve(stericol_context *context, stericol_cf_writer *writer, const char *variable,
+                               unsigned long long more)
+{
+    const stericol_status status =
+        stericol_cf_staging_reserve(context, &writer->staging, variable, writer->pending + more);
+
+    if (status == STERICOL_OK)
+        writer->pending += more;
     return status;
 }
 
@@ -151,6 +167,8 @@ stericol_status stericol_cf_writer_new(stericol_context *context, const char *pa
     if (made == NULL)
         return stericol_fail_memory(context, sizeof *made, "the output");
     status = stericol_cf_staging_begin(context, path, replace, &made->staging);
+    if (status == STERICOL_OK)
+        status = reserve(context, made, NULL, FILE_OVERHEAD);
     if (status != STERICOL_OK)
         goto failed;
     errno = 0;
@@ -174,8 +192,8 @@ void stericol_cf_writer_free(stericol_cf_writer *writer)
         return;
     /* Closing writes what is still held, which nobody wants, and cannot be avoided; it may fail on a full
      * disk. */
-    if (writer->open && nc_close(writer->handle) != NC_NOERR)
-        nc_abort(writer->handle);
+    if (writer->open)
+        nc_close(writer->handle);
     stericol_cf_staging_clear(&writer->staging);
     for (size_t i = 0; i < writer->variable_count; i++)
         free(writer->variables[i].name);
@@ -199,7 +217,6 @@ stericol_status stericol_cf_writer_commit(stericol_context *context, stericol_cf
     if (code != NC_NOERR) {
         const int error = errno;
 
-        nc_abort(writer->handle);
         writer->open = false;
         return translate(context, writer, code, error, NULL);
     }
@@ -216,7 +233,12 @@ stericol_status stericol_cf_write_dimension(stericol_context *context, stericol_
     void *lengths = writer->dimension_length;
     int handle, code;
 
+    stericol_status status;
+
     assert(length > 0);
+    status = reserve(context, writer, name, OBJECT_OVERHEAD);
+    if (status != STERICOL_OK)
+        return status;
     if (!stericol_grow_array(&lengths, index + 1, sizeof *writer->dimension_length))
         return stericol_fail_memory(context, 0, "the output's dimensions");
     writer->dimension_length = lengths;
@@ -250,7 +272,7 @@ static void choose_chunks(const written_variable *variable, size_t size, size_t 
     }
 }
 
-static int compress(int file, const written_variable *variable, size_t size)
+static int compress(int file, written_variable *variable, size_t size)
 {
     size_t chunk[STERICOL_CF_MOST_RANK], chunk_bytes, open = 1;
     int code;
@@ -260,6 +282,7 @@ static int compress(int file, const written_variable *variable, size_t size)
         open *= variable->length[i] < MOST_OPEN_CHUNKS ? variable->length[i] : MOST_OPEN_CHUNKS;
     if (open > MOST_OPEN_CHUNKS)
         open = MOST_OPEN_CHUNKS;
+    variable->held_back = open * chunk_bytes;
     code = nc_def_var_chunking(file, variable->handle, NC_CHUNKED, chunk);
     if (code == NC_NOERR)
         code = nc_def_var_deflate(file, variable->handle, 1, 1, DEFLATE_LEVEL);
@@ -276,19 +299,26 @@ stericol_status stericol_cf_write_variable(stericol_context *context, stericol_c
     const number_type numbers = number_type_of(type);
     void *variables = writer->variables;
     int handles[STERICOL_CF_MOST_RANK], code;
+    stericol_status status;
     written_variable *added;
 
     assert(rank <= STERICOL_CF_MOST_RANK && (numbers.netcdf != NC_NAT || type == STERICOL_CF_STRING));
     assert(!fill || !isnan(numbers.fill) || type == STERICOL_CF_STRING);
+    status = reserve(context, writer, name, OBJECT_OVERHEAD);
+    if (status != STERICOL_OK)
+        return status;
     if (!stericol_grow_array(&variables, writer->variable_count + 1, sizeof *added))
         return stericol_fail_memory(context, 0, "the output's variables");
     writer->variables = variables;
     added = &writer->variables[writer->variable_count];
-    *added = (written_variable){.type = type, .rank = rank, .fill = fill && type != STERICOL_CF_STRING};
+    *added = (written_variable){
+        .type = type, .rank = rank, .fill = fill && type != STERICOL_CF_STRING, .held_back = numbers.size};
     for (size_t i = 0; i < rank; i++) {
         assert(dimension[i] < writer->dimension_count);
         added->length[i] = writer->dimension_length[dimension[i]];
         handles[i] = (int)dimension[i];
+        if (!stericol_multiply_sizes(added->held_back, added->length[i], &added->held_back))
+            return stericol_fail_memory(context, 0, name);
     }
     errno = 0;
     code = nc_def_var(writer->handle, name, type == STERICOL_CF_STRING ? NC_STRING : numbers.netcdf,
@@ -319,8 +349,11 @@ static int owner_of(const stericol_cf_writer *writer, size_t variable)
 stericol_status stericol_cf_write_text(stericol_context *context, stericol_cf_writer *writer, size_t variable,
                                        const char *name, const char *text)
 {
+    stericol_status status = reserve(context, writer, name, OBJECT_OVERHEAD + strlen(text));
     int code;
 
+    if (status != STERICOL_OK)
+        return status;
     errno = 0;
     code = nc_put_att_text(writer->handle, owner_of(writer, variable), name, strlen(text), text);
     return code == NC_NOERR ? STERICOL_OK : translate(context, writer, code, errno, name);
@@ -331,6 +364,7 @@ stericol_status stericol_cf_write_numbers(stericol_context *context, stericol_cf
                                           size_t count, const double *numbers)
 {
     const number_type kind = number_type_of(type);
+    stericol_status status;
     int code;
 
     assert(kind.netcdf != NC_NAT && count > 0);
@@ -342,6 +376,9 @@ stericol_status stericol_cf_write_numbers(stericol_context *context, stericol_cf
             return stericol_fail(context, STERICOL_OUTPUT, writer->staging.path, name, NULL,
                                  "the attribute's value %.9g %s", numbers[i], reason);
     }
+    status = reserve(context, writer, name, OBJECT_OVERHEAD + count * kind.size);
+    if (status != STERICOL_OK)
+        return status;
     errno = 0;
     code = nc_put_att_double(writer->handle, owner_of(writer, variable), name, kind.netcdf, count, numbers);
     return code == NC_NOERR ? STERICOL_OK : translate(context, writer, code, errno, name);
@@ -385,12 +422,29 @@ static void *prepare(const written_variable *variable, const double *values, siz
     return stored;
 }
 
+/* Room for `count` values, beyond what HDF5 may still hold back of this variable and all others. */
+static stericol_status reserve_values(stericol_context *context, stericol_cf_writer *writer,
+                                      written_variable *variable, size_t count)
+{
+    const unsigned long long bytes = count * number_type_of(variable->type).size + OBJECT_OVERHEAD;
+    stericol_status status = STERICOL_OK;
+
+    if (!variable->touched)
+        status = reserve(context, writer, variable->name, variable->held_back);
+    variable->touched = variable->touched || status == STERICOL_OK;
+    if (status == STERICOL_OK)
+        status =
+            stericol_cf_staging_reserve(context, &writer->staging, variable->name, writer->pending + bytes);
+    return status;
+}
+
 stericol_status stericol_cf_write_values(stericol_context *context, stericol_cf_writer *writer,
                                          size_t variable, const size_t *start, const size_t *count,
                                          const double *values)
 {
-    const written_variable *target = &writer->variables[variable];
+    written_variable *target = &writer->variables[variable];
     const char *reason = NULL;
+    stericol_status status;
     size_t total = 1, at = 0;
     void *stored;
     int code;
@@ -410,6 +464,11 @@ stericol_status stericol_cf_write_values(stericol_context *context, stericol_cf_
                              values[at], reason);
     if (stored == NULL)
         return stericol_fail_memory(context, 0, target->name);
+    status = reserve_values(context, writer, target, total);
+    if (status != STERICOL_OK) {
+        free(stored);
+        return status;
+    }
     errno = 0;
     if (target->type == STERICOL_CF_FLOAT)
         code = nc_put_vara_float(writer->handle, target->handle, start, count, stored);
@@ -423,11 +482,18 @@ stericol_status stericol_cf_write_strings(stericol_context *context, stericol_cf
                                           size_t variable, size_t count, const char *const *strings)
 {
     const written_variable *target = &writer->variables[variable];
+    unsigned long long bytes = 0;
+    stericol_status status;
     const char **list;
     int code;
 
     assert(variable < writer->variable_count && target->type == STERICOL_CF_STRING);
     assert(target->rank == 1 && target->length[0] == count);
+    for (size_t i = 0; i < count; i++)
+        bytes += strlen(strings[i]) + 2 * OBJECT_OVERHEAD / 64; /* heap entry and reference, taken amply */
+    status = reserve(context, writer, target->name, bytes);
+    if (status != STERICOL_OK)
+        return status;
     list = stericol_new_array(count, sizeof *list); /* NetCDF-C wants pointers that it could write to */
     if (list == NULL)
         return stericol_fail_memory(context, 0, target->name);
