@@ -68,8 +68,9 @@ STERICOL_API stericol_status stericol_latitude_bounds(stericol_context *context,
 /**
  * Bounds of longitudes half way between neighbouring centres.  The axis may jump by 360 once or more (179.5,
  * -179.5): steps are taken the short way round, the bounds of a cell stay beside its own centre.  Where the
- * gap from last to first centre is no wider than 1.5 of the median step the axis goes all round, and the
- * outer bounds meet in the middle of that gap; else they lie as far outside as the inner ones lie inside.
+ * gap from last to first centre is no wider than 1.5 mean steps (and no narrower than half of one) the axis
+ * goes all round, and the outer bounds meet in the middle of that gap; else they lie as far outside as the
+ * inner ones lie inside.
  *
  * \param count   number of centres, at least 1
  * \param centre  [count] degrees east, all steps of one sign
@@ -167,6 +168,9 @@ typedef struct stericol_box {
 STERICOL_API stericol_status stericol_box_parse(stericol_context *context, const char *text,
                                                 stericol_box *box);
 
+/** How many regions one array of labels can tell apart. */
+#define STERICOL_MOST_LABELS 254
+
 /** A set of regions, in the order in which they were added. */
 typedef struct stericol_regions stericol_regions;
 
@@ -210,7 +214,7 @@ STERICOL_API stericol_status stericol_regions_add_mask(stericol_context *context
 /**
  * Several regions that share no cell, one byte a cell for all together (a mask with flag values).
  *
- * \param count  number of regions, 1 to 255
+ * \param count  number of regions, 1 to STERICOL_MOST_LABELS
  * \param names  [count]
  * \param label  [rows][columns]: 0 for none, else 1 + the index into `names`; copied
  * \retval STERICOL_INPUT a label above `count`
