@@ -154,8 +154,12 @@ typedef struct stericol_volume_and_slopes {
 /**
  * Specific volume by the 75-term polynomial, m3/kg (Roquet et al. 2015, Ocean Modelling 90, 29-43).
  *
- * Against the full Gibbs function, as measured by this project's tests: relative error at most 7e-7 for
- * 33..37 g/kg with -1..25 degC to 1500 dbar and -1..6 degC to 5000 dbar.
+ * Largest relative error against the full Gibbs function, as measured by this project's tests:
+ *   7e-7    30..40 g/kg, -2..33 degC to 500 dbar; 33..37 g/kg, -1..25 degC to 1500 dbar;
+ *           30..40 g/kg, -2..15 degC to 8000 dbar
+ *   1.5e-6  0..42 g/kg, -2..35 degC to 500 dbar
+ *   1.2e-4  0..42 g/kg, -3..40 degC to 8000 dbar: all of stericol_in_valid_range(); worst in hot water under
+ * great pressure, which no ocean holds
  *
  * \param absolute_salinity         g/kg; below -24 gives NaN
  * \param conservative_temperature  degC
