@@ -20,8 +20,7 @@
 extern "C" {
 #endif
 
-/** Radius of the sphere with the surface of the GRS 80 ellipsoid [m] (Moritz 2000, J. Geodesy 74, 128-133).
- */
+/** Radius of the sphere with the surface of GRS 80 [m] (Moritz 2000, J. Geodesy 74, 128-133). */
 #define STERICOL_AUTHALIC_RADIUS 6371007.181
 
 /** How the sides of the cells are given. */
@@ -40,8 +39,12 @@ typedef struct stericol_cells {
     stericol_cells_kind kind;
     size_t rows;
     size_t columns;
-    size_t corners;                 /**< POLYGONS only: corners of each cell, 3 to 64 */
-    const double *latitude;         /**< centres: [rows] if REGULAR, else [rows][columns], degrees north */
+    size_t corners; /**< POLYGONS only: corners of each cell, 3 to 64 */
+    /**
+     * Centres: [rows] if REGULAR, else [rows][columns], degrees north.  Areas and regions can do without
+     * (NULL): then the middle of the corners serves, and wrapped bounds of longitude are not recognised.
+     */
+    const double *latitude;
     const double *longitude;        /**< centres: [columns] if REGULAR, else [rows][columns], degrees east */
     const double *latitude_bounds;  /**< REGULAR: [rows][2], degrees north, either order */
     const double *longitude_bounds; /**< REGULAR: [columns][2], degrees east, either order */
@@ -101,10 +104,10 @@ STERICOL_API stericol_status stericol_cell_corners(stericol_context *context, si
 /**
  * Areas of the cells of some rows.
  *
- * REGULAR: R^2 |dlon| |sin(lat2) - sin(lat1)|, evaluated as a product so that narrow cells lose no digits;
- * the same bits for either order of the bounds and for either branch of the longitude.  A cell whose bounds
- * lie more than 360 degrees apart is refused.  LATTICE, POLYGONS: stericol_polygon_area() of each cell; NaN
- * where a corner is NaN.
+ * REGULAR: R^2 |dlon| |sin(lat2) - sin(lat1)|, longitudes rounded to 2^-40 degrees (0.1 micrometre),
+ * evaluated as a product so that narrow cells lose no digits; the same bits for either order of the bounds
+ * and for either branch of the longitude.  A cell whose bounds lie more than 360 degrees apart is refused.
+ * LATTICE, POLYGONS: stericol_polygon_area() of each cell; NaN where a corner is NaN.
  *
  * \param cells      the grid
  * \param radius     of the sphere [m], > 0
@@ -112,7 +115,8 @@ STERICOL_API stericol_status stericol_cell_corners(stericol_context *context, si
  * \param area       [row_count][columns] out [m2]
  *
  * \retval STERICOL_INPUT  REGULAR: a bound is missing, a latitude lies outside +-90 (by more than 1e-4, what
- * a float leaves), a cell is wider than 360.  `area` then holds nothing of use.
+ *         a float leaves; less is taken as the pole), a cell is wider than 360 or has no width.  POLYGONS:
+ *         fewer than 3 or more than 64 corners.  `area` then holds nothing of use.
  */
 STERICOL_API stericol_status stericol_cell_areas(stericol_context *context, const stericol_cells *cells,
                                                  double radius, size_t first_row, size_t row_count,
@@ -232,12 +236,16 @@ STERICOL_API const char *stericol_regions_name(const stericol_regions *set, size
  * Lays the regions over a grid.  To be called once, after the last addition and before the first
  * stericol_regions_row().  `cells` (the record and its arrays) must outlive the set.
  *
- * REGULAR cells: boxes and hemispheres by the exact covered fraction; oceans exactly along each of 16
- * parallels that cut the row into strips of equal area.  Other cells: a cell whose corners and centre agree
+ * REGULAR cells: boxes and hemispheres by the exact covered fraction; oceans exactly along each of 12 to 16
+ * parallels that stand for strips of the row, whose borders take up 60 S, 60 N and 61 N, so that these cut
+ * exactly too.  Other cells: a cell whose corners and centre agree
  * is wholly in or out; else by 64 or more sample points, each standing for an equal part of a triangle
  * between the centre and a side.  A strip of a region narrower than a cell that touches none of these points
  * is missed.  A cell with a NaN corner belongs to whatever holds its centre.  Memory: one byte a cell for all
- * oceans together, half a byte a box.
+ * oceans together; a box or the hemispheres need a number a row and column, on other than regular cells a
+ * byte a cell; each cell that a limit cuts some 50 bytes more.
+ *
+ * After a failure the set can only be freed.
  *
  * \retval STERICOL_INPUT the cells' bounds cannot be used (see stericol_cell_areas()), or a mask has other
  *         rows and columns
@@ -268,12 +276,13 @@ typedef enum stericol_ocean {
  * The ocean of a point.  Every point belongs to exactly one, or to none.  Land belongs to the nearest sea's
  * side of a dividing line drawn roughly along the watershed, so that data near a coast fall right.
  *
- * Limits, simplified after IHO S-23 (3rd edition 1953; the Southern Ocean after the draft of 2002):
- * Southern: south of 60 S.  Atlantic | Indian: 20 E.  Indian | Pacific: 146 49' E south of Australia, through
- * Bass Strait; Cape Don - Selaru - Timor - Roti - Savu - Sumba - Sumbawa - Java - Sunda Strait - Sumatra -
- * Singapore: the Timor Sea and the Strait of Malacca are Indian, the Java, Flores, Savu, Banda and Arafura
- * seas and the South China Sea are Pacific. Pacific | Atlantic: 67 16' W.  Arctic | Pacific: the narrows of
- * Bering Strait.  Arctic | Atlantic: 60 N in Davis Strait, Cape Nansen - Iceland - Faroes - Shetland - 61 N:
+ * Limits, simplified after IHO S-23 (3rd edition 1953; the Southern and the Arctic Ocean after the draft of
+ * 2002), the limits being straight on a chart of longitude and latitude: Southern: south of 60 S.  Atlantic |
+ * Indian: 20 E.  Indian | Pacific: 146 49' E south of Australia, through Bass Strait; Cape Don - Selaru -
+ * Timor - Roti - Savu - Sumba - Sumbawa - Java - Sunda Strait - Sumatra - Singapore: the Timor Sea and the
+ * Strait of Malacca are Indian, the Java, Flores, Savu, Banda and Arafura seas and the South China Sea are
+ * Pacific. Pacific | Atlantic: 67 16' W.  Arctic | Pacific: the narrows of Bering Strait.  Arctic | Atlantic
+ * (the extent of the draft of 2002): 60 N in Davis Strait, Cape Nansen - Iceland - Faroes - Shetland - 61 N:
  * the Norwegian and Greenland seas, Baffin Bay, Hudson Bay and Hudson Strait are Arctic.  The Mediterranean,
  * Black Sea and Baltic are Atlantic, the Red Sea and the Persian Gulf Indian.
  *

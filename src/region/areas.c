@@ -26,14 +26,12 @@ stericol_status stericol_cell_areas(stericol_context *context, const stericol_ce
 {
     double corner_latitude[STERICOL_MOST_CORNERS], corner_longitude[STERICOL_MOST_CORNERS];
     bool regular = cells->kind == STERICOL_CELLS_REGULAR;
+    stericol_status status;
 
     assert(radius > 0.0 && first_row <= cells->rows && row_count <= cells->rows - first_row);
-    if (regular) {
-        stericol_status status = stericol_check_bounds(context, cells);
-
-        if (status != STERICOL_OK)
-            return status;
-    }
+    status = stericol_check_cells(context, cells);
+    if (status != STERICOL_OK)
+        return status;
     for (size_t row = first_row; row < first_row + row_count; row++) {
         double *out = area + (row - first_row) * cells->columns;
         double south, north, zone = 0.0, west, width;

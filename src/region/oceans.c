@@ -6,7 +6,7 @@
  * side.
  *
  * At sea the points follow International Hydrographic Organization, S-23, Limits of Oceans and Seas (3rd
- * ed. 1953, and for the Southern Ocean and the extent of the Arctic Ocean the draft 4th ed. of 2002),
+ * ed. 1953; for the Southern Ocean and the extent of the Arctic Ocean the draft 4th ed. of 2002),
  * simplified to straight lines between the capes that it names.  On land they follow the watershed roughly,
  * from common geographic knowledge: no data lie there, only nearby coasts must fall on the right side.
  */
@@ -399,6 +399,8 @@ typedef struct parallel {
 
 /* A row of cells: its parallels, and the gaps between the meridians where any of them changes ocean. */
 typedef struct row_pieces {
+    size_t strips;         /* at most STRIPS */
+    double weight[STRIPS]; /* of each strip in the area of the row; they add to 1 */
     parallel strip[STRIPS];
     size_t gaps;
     double west[MOST_GAPS + 1];
@@ -453,15 +455,42 @@ static size_t piece_of(const double *west, size_t count, double value)
     return low;
 }
 
-/* Cuts a row of cells into strips of equal area, and each at the limits of the oceans. */
+/*
+ * Chooses the strips of a row: of equal area, except that the parallels which are limits themselves (60 S,
+ * and 60 N and 61 N in the Atlantic) are borders of strips, so that what they cut is exact.
+ */
+static void choose_strips(double south, double north, row_pieces *row, double *latitude)
+{
+    static const double LIMITS[] = {-60.0, 60.0, 61.0};
+    double border[5];
+    size_t bands = 0, each;
+
+    border[0] = south;
+    for (size_t i = 0; i < sizeof LIMITS / sizeof LIMITS[0]; i++)
+        if (LIMITS[i] > south && LIMITS[i] < north)
+            border[++bands] = LIMITS[i];
+    border[++bands] = north;
+    each = STRIPS / bands;
+    row->strips = bands * each;
+    for (size_t i = 0; i < row->strips; i++) {
+        double low = border[i / each], high = border[i / each + 1];
+        double from = sin(low * STERICOL_RADIANS), to = sin(high * STERICOL_RADIANS);
+
+        latitude[i] = asin(from + ((double)(i % each) + 0.5) / (double)each * (to - from)) / STERICOL_RADIANS;
+        row->weight[i] =
+            stericol_sine_difference(low, high) / stericol_sine_difference(south, north) / (double)each;
+    }
+}
+
+/* Cuts a row of cells into strips, and each at the limits of the oceans. */
 static void cut_row(double south, double north, row_pieces *row)
 {
-    double low = sin(south * STERICOL_RADIANS), high = sin(north * STERICOL_RADIANS);
+    double latitude[STRIPS];
     size_t count = 0;
 
-    for (size_t i = 0; i < STRIPS; i++) {
-        cut_parallel(asin(low + ((double)i + 0.5) / STRIPS * (high - low)) / STERICOL_RADIANS,
-                     &row->strip[i]);
+    choose_strips(south, north, row, latitude);
+    for (size_t i = 0; i < row->strips; i++) {
+        cut_parallel(latitude[i], &row->strip[i]);
         memcpy(row->west + count, row->strip[i].west, row->strip[i].count * sizeof *row->west);
         count += row->strip[i].count;
     }
@@ -471,7 +500,7 @@ static void cut_row(double south, double north, row_pieces *row)
     for (size_t i = 0; i < count; i++) {
         double middle = 0.5 * (row->west[i] + row->west[i + 1]);
 
-        for (size_t k = 0; k < STRIPS; k++) {
+        for (size_t k = 0; k < row->strips; k++) {
             const parallel *cut = &row->strip[k];
             stericol_ocean ocean = cut->ocean[piece_of(cut->west, cut->count, middle)];
 
@@ -484,9 +513,9 @@ static void cut_row(double south, double north, row_pieces *row)
 }
 
 /* Adds to share[] what part of a cell lies in each piece. */
-static void share_out(const parallel *cut, double west, double width, double *share)
+static void share_out(const parallel *cut, double weight, double west, double width, double *share)
 {
-    double left = width, part = 1.0 / (STRIPS * width);
+    double left = width, part = weight / width;
     size_t at = piece_of(cut->west, cut->count, west);
 
     while (left > 0.0) {
@@ -512,8 +541,8 @@ static bool cover_cell(stericol_cover *cover, const row_pieces *pieces, size_t r
         stericol_cover_put_whole(cover, row, column, pieces->ocean[gap]);
         return true;
     }
-    for (size_t i = 0; i < STRIPS; i++)
-        share_out(&pieces->strip[i], west, width, share);
+    for (size_t i = 0; i < pieces->strips; i++)
+        share_out(&pieces->strip[i], pieces->weight[i], west, width, share);
     return stericol_cover_put(cover, row, column, share);
 }
 

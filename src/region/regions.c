@@ -306,11 +306,9 @@ stericol_status stericol_regions_prepare(stericol_context *context, stericol_reg
     stericol_status status;
 
     assert(set->cells == NULL);
-    if (cells->kind == STERICOL_CELLS_REGULAR) {
-        status = stericol_check_bounds(context, cells);
-        if (status != STERICOL_OK)
-            return status;
-    }
+    status = stericol_check_cells(context, cells);
+    if (status != STERICOL_OK)
+        return status;
     for (size_t i = 0; i < set->count; i++) {
         const member *one = &set->region[i];
 

@@ -88,7 +88,7 @@ double stericol_reduced_longitude(double longitude)
     return reduced >= 180.0 ? -180.0 : reduced;
 }
 
-stericol_status stericol_check_bounds(stericol_context *context, const stericol_cells *cells)
+static stericol_status check_bounds(stericol_context *context, const stericol_cells *cells)
 {
     static const char REMEDY[] = "give bounds of the cells in degrees, or none";
 
@@ -108,6 +108,18 @@ stericol_status stericol_check_bounds(stericol_context *context, const stericol_
             return stericol_fail(context, STERICOL_INPUT, NULL, "longitude bounds", REMEDY,
                                  "column %zu reaches from %.9g to %.9g degrees east", column + 1, a, b);
     }
+    return STERICOL_OK;
+}
+
+stericol_status stericol_check_cells(stericol_context *context, const stericol_cells *cells)
+{
+    if (cells->kind == STERICOL_CELLS_REGULAR)
+        return check_bounds(context, cells);
+    if (cells->kind == STERICOL_CELLS_POLYGONS &&
+        (cells->corners < 3 || cells->corners > STERICOL_MOST_CORNERS))
+        return stericol_fail(context, STERICOL_INPUT, NULL, "bounds",
+                             "give cells with 3 to 64 corners, or no bounds", "cells have %zu corners",
+                             cells->corners);
     return STERICOL_OK;
 }
 

@@ -40,8 +40,8 @@ double stericol_snapped_longitude(double longitude);
 /* The same meridian within -180 <= longitude < 180; exact for snapped longitudes. */
 double stericol_reduced_longitude(double longitude);
 
-/* Whether the bounds of REGULAR cells can be used; the message says what is wrong. */
-stericol_status stericol_check_bounds(stericol_context *context, const stericol_cells *cells);
+/* Whether the bounds or corners of cells can be used; the message says what is wrong. */
+stericol_status stericol_check_cells(stericol_context *context, const stericol_cells *cells);
 /* Southern and northern side of a row of REGULAR cells that passed the check. */
 void stericol_row_span(const stericol_cells *cells, size_t row, double *south, double *north);
 /*

@@ -197,10 +197,35 @@ static void a_lattice_fills_the_sphere(void **state)
 
 static void polygons_with_missing_corners(void **state)
 {
-    const double latitude[3] = {0.0, 0.0, NAN}, longitude[3] = {0.0, 90.0, 17.0};
+    const double latitude[3] = {0.0, 0.0, (double)NAN}, longitude[3] = {0.0, 90.0, 17.0};
 
     (void)state;
     assert_nan(stericol_polygon_area(R, 3, latitude, longitude));
+}
+
+static void polygons_with_a_wrong_number_of_corners(void **state)
+{
+    static const size_t corners[] = {2, 65};
+    static const char *const messages[] = {
+        "bounds: cells have 2 corners; give cells with 3 to 64 corners, or no bounds",
+        "bounds: cells have 65 corners; give cells with 3 to 64 corners, or no bounds"};
+
+    (void)state;
+    for (size_t i = 0; i < 2; i++) {
+        const double corner[65] = {0.0};
+        stericol_context *context = stericol_context_new();
+        stericol_cells cells = {.kind = STERICOL_CELLS_POLYGONS,
+                                .rows = 1,
+                                .columns = 1,
+                                .corners = corners[i],
+                                .corner_latitude = corner,
+                                .corner_longitude = corner};
+        double area;
+
+        assert_int_equal(stericol_cell_areas(context, &cells, R, 0, 1, &area), STERICOL_INPUT);
+        assert_string_equal(stericol_context_message(context), messages[i]);
+        stericol_context_free(context);
+    }
 }
 
 static void latitude_bounds(void **state)
@@ -384,7 +409,7 @@ static void a_row_at_the_pole_is_not_repeated(void **state)
         latitude[i] = 88.0 + (double)(i / COLUMNS);
         longitude[i] = 45.0 * (double)(i % COLUMNS);
     }
-    latitude[1] = NAN;
+    latitude[1] = (double)NAN;
     assert_int_equal(stericol_repeated_cells(NULL, &cells, repeated, &count), STERICOL_OK);
     assert_int_equal(count, 0);
 }
@@ -403,6 +428,7 @@ int main(void)
         cmocka_unit_test(small_polygons_equal_regular_cells),
         cmocka_unit_test(a_lattice_fills_the_sphere),
         cmocka_unit_test(polygons_with_missing_corners),
+        cmocka_unit_test(polygons_with_a_wrong_number_of_corners),
         cmocka_unit_test(latitude_bounds),
         cmocka_unit_test(longitude_bounds),
         cmocka_unit_test(corners_of_centres),

@@ -258,8 +258,8 @@ static void boxes_on_curvilinear_cells(void **state)
 static void curvilinear_cells_with_missing_corners(void **state)
 {
     static const char *const texts[] = {"q=0,0,20,20"};
-    double latitude[2] = {10.0, NAN}, longitude[2] = {10.0, NAN};
-    double corner_latitude[6] = {5.0, NAN, 5.0, 15.0, 15.0, 15.0},
+    double latitude[2] = {10.0, (double)NAN}, longitude[2] = {10.0, (double)NAN};
+    double corner_latitude[6] = {5.0, (double)NAN, 5.0, 15.0, 15.0, 15.0},
            corner_longitude[6] = {5.0, 15.0, 19.0, 5.0, 15.0, 19.0};
     stericol_cells cells = {.kind = STERICOL_CELLS_POLYGONS,
                             .rows = 1,
@@ -384,7 +384,7 @@ static void sums_do_not_depend_on_the_order(void **state)
     assert_same_number(stericol_region_totals_value(one, 1, 2), 1.0);
     assert_same_number(stericol_region_totals_value(one, 0, 1), 1.0);
     assert_same_number(stericol_region_totals_value(one, 0, 0), 0.0);
-    stericol_region_totals_add(one, 1, 2, 1.0, NAN);
+    stericol_region_totals_add(one, 1, 2, 1.0, (double)NAN);
     assert_nan(stericol_region_totals_value(one, 1, 2));
     stericol_region_totals_clear(one);
     assert_same_number(stericol_region_totals_value(one, 1, 2), 0.0);
@@ -395,7 +395,7 @@ static void sums_do_not_depend_on_the_order(void **state)
 
 static void rows_pass_over_missing_values(void **state)
 {
-    const double weight[4] = {2.0, 0.0, 5.0, 1.0}, value[4] = {3.0, INFINITY, NAN, 4.0};
+    const double weight[4] = {2.0, 0.0, 5.0, 1.0}, value[4] = {3.0, (double)INFINITY, (double)NAN, 4.0};
     stericol_region_totals *totals = stericol_region_totals_new(1, 1);
 
     (void)state;
