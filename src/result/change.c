@@ -269,6 +269,41 @@ static stericol_status define_region_names(stericol_context *context, stericol_r
     return to.status;
 }
 
+static stericol_status define_quantities(stericol_context *context, stericol_result *result,
+                                         const stericol_change_layout *layout, size_t dimension)
+{
+    const form area = {.prefix = "region_",
+                       .whose = ", by region",
+                       .type = STERICOL_CF_DOUBLE,
+                       .rank = 1,
+                       .dimension = {dimension},
+                       .coordinates = "region_name"};
+    form whole = area, by_layer = area;
+    stericol_status status = STERICOL_OK;
+
+    if (result->axes.contiguous)
+        whole.coordinates = "region_name column_depth";
+    by_layer.prefix = "region_layer_";
+    by_layer.whose = ", by region and layer";
+    by_layer.rank = 2;
+    by_layer.dimension[1] = result->axes.layer;
+    by_layer.coordinates = "region_name layer_depth";
+    for (int kind = WHOLE; kind < (layout->layers > 1 ? KINDS : BY_LAYER); kind++)
+        for (int i = 0; i < STERICOL_REGION_QUANTITY_COUNT && status == STERICOL_OK; i++) {
+            const stericol_region_quantity quantity = (stericol_region_quantity)i;
+            const bool surface = quantity == STERICOL_REGION_AREA; /* it has no depth */
+
+            if (!stericol_change_holds_region(layout, quantity) || (surface && kind == BY_LAYER))
+                continue;
+            status = define(context, result, stericol_region_entry(quantity),
+                            surface         ? &area
+                            : kind == WHOLE ? &whole
+                                            : &by_layer,
+                            &result->region[i][kind]);
+        }
+    return status;
+}
+
 static stericol_status define_regions(stericol_context *context, stericol_result *result,
                                       const stericol_change_layout *layout)
 {
@@ -280,35 +315,8 @@ static stericol_status define_regions(stericol_context *context, stericol_result
     status = stericol_cf_write_dimension(context, result->writer, "region", layout->regions, &dimension);
     if (status == STERICOL_OK)
         status = define_region_names(context, result, dimension, layout->region_names);
-    if (status == STERICOL_OK) {
-        const form shapes[KINDS] = {
-            {"region_",
-             " of the region",
-             STERICOL_CF_DOUBLE,
-             1,
-             {dimension},
-             false,
-             result->axes.contiguous ? "region_name column_depth" : "region_name",
-             false},
-            {"region_layer_",
-             " of the region, by layer",
-             STERICOL_CF_DOUBLE,
-             2,
-             {dimension, result->axes.layer},
-             false,
-             "region_name layer_depth",
-             false},
-        };
-
-        for (int kind = WHOLE; kind < (layout->layers > 1 ? KINDS : BY_LAYER); kind++)
-            for (int quantity = 0; quantity < STERICOL_REGION_QUANTITY_COUNT && status == STERICOL_OK;
-                 quantity++)
-                if (stericol_change_holds_region(layout, (stericol_region_quantity)quantity) &&
-                    (kind == WHOLE || quantity != STERICOL_REGION_AREA))
-                    status =
-                        define(context, result, stericol_region_entry((stericol_region_quantity)quantity),
-                               &shapes[kind], &result->region[quantity][kind]);
-    }
+    if (status == STERICOL_OK)
+        status = define_quantities(context, result, layout, dimension);
     if (status == STERICOL_OK && layout->region_area_source != NULL)
         status = stericol_cf_write_text(context, result->writer, result->region[STERICOL_REGION_AREA][WHOLE],
                                         "comment", layout->region_area_source);
