@@ -123,11 +123,11 @@ STERICOL_API void stericol_volume_points_derivatives(const stericol_water *water
  * Whether a point lies where the equation is meant to be used.  It only reports; nothing is changed or
  * refused.
  *
- * EOS-80: 0..42, -2..40 degC, 0..10000 dbar (UNESCO Technical Papers in Marine Science 38, 1981).
- * Gibbs function: 0..42 g/kg, -6..40 degC, 0..10000 dbar (the standard range of IAPWS R13-08 in round
- * numbers). Polynomial and linear: 0..42 g/kg, -3..40 degC, 0..8000 dbar: a box of our own about the waters
- * that the polynomial was fitted to.  Its corners (hot water at great pressure) hold no ocean, and errors
- * grow there.
+ * - EOS-80: 0..42, -2..40 degC, 0..10000 dbar (UNESCO Technical Papers in Marine Science 38, 1981).
+ * - Gibbs function: 0..42 g/kg, -6..40 degC, 0..10000 dbar (the standard range of IAPWS R13-08 in round
+ *   numbers, from memory).
+ * - Polynomial and linear: 0..42 g/kg, -3..40 degC, 0..8000 dbar: a box of our own about the waters that the
+ *   polynomial was fitted to.  For its corners see stericol_specific_volume().
  *
  * \return false outside, and for any NaN.
  */

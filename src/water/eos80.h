@@ -11,8 +11,4 @@ typedef struct stericol_sloped {
 /* Specific volume, m3/kg, by in situ temperature (IPTS-68). */
 stericol_sloped stericol_eos80_volume_in_situ(double practical_salinity, double temperature, double pressure);
 
-/* Specific volume, m3/kg, by potential temperature (IPTS-68, reference 0 dbar). */
-stericol_sloped stericol_eos80_volume_potential(double practical_salinity, double potential_temperature,
-                                                double pressure);
-
 #endif

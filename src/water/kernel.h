@@ -41,6 +41,19 @@ typedef struct stericol_kernel {
                         double *temperature);
     void (*in_situ_points)(const double *pressure, size_t count, const double *salinity,
                            const double *potential, double *temperature);
+
+    /* EOS-80: practical salinity, potential temperature -> v [, dv/dtheta, dv/dS].  Without fused operations,
+       so that these are the same bits on every path. */
+    void (*eos80_row)(double pressure, size_t count, const double *salinity, const double *temperature,
+                      double *volume);
+    void (*eos80_points)(const double *pressure, size_t count, const double *salinity,
+                         const double *temperature, double *volume);
+    void (*eos80_row_derivatives)(double pressure, size_t count, const double *salinity,
+                                  const double *temperature, double *volume, double *volume_temperature,
+                                  double *volume_salinity);
+    void (*eos80_points_derivatives)(const double *pressure, size_t count, const double *salinity,
+                                     const double *temperature, double *volume, double *volume_temperature,
+                                     double *volume_salinity);
 } stericol_kernel;
 
 /* The fastest path that this processor has.  Looked up anew in every call: nothing is kept, nothing can race.

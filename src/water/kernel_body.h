@@ -12,6 +12,7 @@
 #include "water/kernel.h"
 
 #include "water/constants.h"
+#include "water/eos80_body.h"
 #include "water/gibbs_terms.h"
 #include "water/volume_terms.h"
 
@@ -436,6 +437,53 @@ static void in_situ_points(const double *pressure, size_t count, const double *s
     }
 }
 
+/* ---- EOS-80
+ * ------------------------------------------------------------------------------------------------ */
+
+static void eos80_row(double pressure, size_t count, const double *salinity, const double *temperature,
+                      double *volume)
+{
+#pragma omp simd
+    for (size_t i = 0; i < count; i++)
+        volume[i] = eos80_volume_potential(salinity[i], temperature[i], pressure).value;
+}
+
+static void eos80_row_derivatives(double pressure, size_t count, const double *salinity,
+                                  const double *temperature, double *volume, double *volume_temperature,
+                                  double *volume_salinity)
+{
+#pragma omp simd
+    for (size_t i = 0; i < count; i++) {
+        const stericol_sloped v = eos80_volume_potential(salinity[i], temperature[i], pressure);
+
+        volume[i] = v.value;
+        volume_temperature[i] = v.by_temperature;
+        volume_salinity[i] = v.by_salinity;
+    }
+}
+
+static void eos80_points(const double *pressure, size_t count, const double *salinity,
+                         const double *temperature, double *volume)
+{
+#pragma omp simd
+    for (size_t i = 0; i < count; i++)
+        volume[i] = eos80_volume_potential(salinity[i], temperature[i], pressure[i]).value;
+}
+
+static void eos80_points_derivatives(const double *pressure, size_t count, const double *salinity,
+                                     const double *temperature, double *volume, double *volume_temperature,
+                                     double *volume_salinity)
+{
+#pragma omp simd
+    for (size_t i = 0; i < count; i++) {
+        const stericol_sloped v = eos80_volume_potential(salinity[i], temperature[i], pressure[i]);
+
+        volume[i] = v.value;
+        volume_temperature[i] = v.by_temperature;
+        volume_salinity[i] = v.by_salinity;
+    }
+}
+
 extern const stericol_kernel STERICOL_KERNEL;
 const stericol_kernel STERICOL_KERNEL = {
     .name = STERICOL_KERNEL_NAME,
@@ -449,4 +497,8 @@ const stericol_kernel STERICOL_KERNEL = {
     .potential_points = potential_points,
     .in_situ_row = in_situ_row,
     .in_situ_points = in_situ_points,
+    .eos80_row = eos80_row,
+    .eos80_points = eos80_points,
+    .eos80_row_derivatives = eos80_row_derivatives,
+    .eos80_points_derivatives = eos80_points_derivatives,
 };

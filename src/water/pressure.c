@@ -10,8 +10,6 @@
 #define GRAVITY_SINE_4 2.32e-5
 #define GRAVITY_DEPTH 2.26e-7
 
-#define RADIANS_PER_DEGREE (3.14159265358979323846 / 180.0)
-
 enum { PRESSURE_POWERS = 7 };
 
 /* v(35.16504, 0, p) = sum column[k] z^k, z = p / 1e4 dbar. */
@@ -63,7 +61,7 @@ static double standard_work(const standard_column *column, double z)
 
 static double surface_gravity(double latitude)
 {
-    const double sine = sin(latitude * RADIANS_PER_DEGREE), s = sine * sine;
+    const double sine = sin(latitude * STERICOL_RADIANS_PER_DEGREE), s = sine * sine;
 
     return GRAVITY_EQUATOR * (1.0 + s * (GRAVITY_SINE_2 + s * GRAVITY_SINE_4));
 }

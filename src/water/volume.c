@@ -1,7 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The equations of state behind one interface. */
 #include "water/constants.h"
-#include "water/eos80.h"
 #include "water/gibbs.h"
 #include "water/kernel.h"
 
@@ -58,16 +57,18 @@ static void gibbs_volume(pressures p, size_t count, const double *salinity, cons
 static void eos80_volume(pressures p, size_t count, const double *salinity, const double *temperature,
                          double *volume, double *volume_temperature, double *volume_salinity)
 {
-    for (size_t i = 0; i < count; i++) {
-        const stericol_sloped v =
-            stericol_eos80_volume_potential(salinity[i], temperature[i], p.first[i * p.step]);
+    const stericol_kernel *const kernel = stericol_kernel_best();
 
-        volume[i] = v.value;
-        if (volume_temperature != NULL) {
-            volume_temperature[i] = v.by_temperature;
-            volume_salinity[i] = v.by_salinity;
-        }
-    }
+    if (volume_temperature == NULL && p.step == 0)
+        kernel->eos80_row(*p.first, count, salinity, temperature, volume);
+    else if (volume_temperature == NULL)
+        kernel->eos80_points(p.first, count, salinity, temperature, volume);
+    else if (p.step == 0)
+        kernel->eos80_row_derivatives(*p.first, count, salinity, temperature, volume, volume_temperature,
+                                      volume_salinity);
+    else
+        kernel->eos80_points_derivatives(p.first, count, salinity, temperature, volume, volume_temperature,
+                                         volume_salinity);
 }
 
 /* The temperature and the salinity at which the linear equation has its density. */
