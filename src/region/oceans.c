@@ -184,8 +184,10 @@ static const chart_point arctic[] = {
     {FAR_WEST, 66.9},
     {-180.0, 66.9},
     /* Chukotka, the narrows of Bering Strait (Cape Dezhnev - Cape Prince of Wales), Alaska */
-    {-176.0, 66.55},
-    {-172.0, 66.2},
+    {-178.0, 66.75},
+    {-176.0, 66.25},
+    {-174.5, 66.05},
+    {-172.0, 65.9},
     {-169.65, 66.08},
     {-168.12, 65.63},
     {-165.0, 65.6},
@@ -211,7 +213,10 @@ static const chart_point arctic[] = {
     {-38.0, 68.5},
     {-30.2, 68.25},
     {-23.1, 66.43},
-    {-21.0, 65.5},
+    {-22.2, 66.2},
+    {-21.9, 65.75},
+    {-21.5, 65.2},
+    {-20.0, 64.9},
     {-18.0, 64.9},
     {-13.5, 65.07},
     /* Fugloy, Muckle Flugga, 61 N to Norway */
@@ -245,11 +250,8 @@ static const chart_point southern[] = {
 
 /* Waters that belong to no ocean */
 static const chart_point inner_asia[] = {/* Caspian, Aral, Balkhash, Baikal */
-                                         {46.3, 36.0},
-                                         {46.3, 49.0},
-                                         {58.0, 58.0},
-                                         {110.0, 58.0},
-                                         {110.0, 36.0}};
+                                         {44.0, 36.0}, {44.0, 47.0},  {47.0, 49.5},
+                                         {58.0, 58.0}, {110.0, 58.0}, {110.0, 36.0}};
 static const chart_point inner_america[] = {/* the Great Lakes, Winnipeg, Great Slave, Great Bear */
                                             {-75.6, 41.2},  {-75.6, 47.0},  {-84.0, 49.8},  {-93.0, 49.8},
                                             {-98.0, 56.0},  {-104.0, 63.0}, {-112.0, 65.8}, {-118.0, 67.0},
