@@ -87,8 +87,7 @@ static size_t width_of(const char *text)
     return width;
 }
 
-/* Blank when missing; a value that the column's decimals would show as zero is shown by its own first digits.
- */
+/* Blank when missing; a value of which the column's decimals would leave less than two digits keeps those. */
 static void show_number(const table_plan *plan, column which, double value, char text[NUMBER_ROOM])
 {
     const int decimals = plan->decimals[which];
@@ -97,8 +96,8 @@ static void show_number(const table_plan *plan, column which, double value, char
         text[0] = '\0';
     else if (heads[which].powers)
         snprintf(text, NUMBER_ROOM, "%.3e", value);
-    else if (fabs(value) > 0.0 && fabs(value) < 0.5 * pow(10.0, -decimals))
-        snprintf(text, NUMBER_ROOM, "%.0e", value);
+    else if (fabs(value) > 0.0 && fabs(value) < pow(10.0, 1 - decimals))
+        snprintf(text, NUMBER_ROOM, "%.2g", value);
     else if (fabs(value) >= 1e7)
         snprintf(text, NUMBER_ROOM, "%.2e", value);
     else
