@@ -255,6 +255,7 @@ static void test_large_maps_are_cut_along_rows(void **state)
     stage *on = *state;
     stericol_cf_writer *writer = NULL;
     size_t dims[2], map, chunk[2];
+    struct stat found;
     int file, storage;
 
     assert_ok(stericol_cf_writer_new(on->context, on->path, false, &writer), on->context);
@@ -270,6 +271,10 @@ static void test_large_maps_are_cut_along_rows(void **state)
     assert_int_equal(chunk[1], 3000);
     assert_int_equal(chunk[0], (4 << 20) / 4 / 3000);
     nc_close(file);
+    /* What was reserved on disk and not needed is given back: megabytes, against blocks of at most some 64
+     * KiB. */
+    assert_int_equal(stat(on->path, &found), 0);
+    assert_true((long long)found.st_blocks * 512 <= (long long)found.st_size + 65536);
 }
 
 static void test_long_texts_fit(void **state)
