@@ -82,15 +82,17 @@ typedef enum stericol_layer_state {
 
 /** What can be asked of a finished column. */
 typedef enum stericol_column_quantity {
-    STERICOL_COLUMN_TOTAL,        /**< steric height change, m */
-    STERICOL_COLUMN_THERMOSTERIC, /**< its part from temperature, m */
-    STERICOL_COLUMN_HALOSTERIC,   /**< its part from salinity, m */
-    STERICOL_COLUMN_REMAINDER,    /**< total - thermosteric - halosteric, m; 0 when symmetric */
-    STERICOL_COLUMN_HEAT,         /**< heat content change, J/m2 */
-    STERICOL_COLUMN_EFFICIENCY,   /**< thermosteric / heat, m3/J; NaN where warming and cooling cancel */
-    STERICOL_COLUMN_EXPANSION,    /**< mean thermal expansion at the mid state, 1/K */
-    STERICOL_COLUMN_DEPTH,        /**< thickness integrated, m */
-    STERICOL_COLUMN_QUANTITIES    /**< how many there are */
+    STERICOL_COLUMN_TOTAL,          /**< steric height change, m */
+    STERICOL_COLUMN_THERMOSTERIC,   /**< its part from temperature, m */
+    STERICOL_COLUMN_HALOSTERIC,     /**< its part from salinity, m */
+    STERICOL_COLUMN_REMAINDER,      /**< total - thermosteric - halosteric, m; 0 when symmetric */
+    STERICOL_COLUMN_HEAT,           /**< heat content change, J/m2 */
+    STERICOL_COLUMN_EFFICIENCY,     /**< thermosteric / heat, m3/J; NaN where warming and cooling cancel */
+    STERICOL_COLUMN_EXPANSION,      /**< mean thermal expansion at the mid state, 1/K */
+    STERICOL_COLUMN_DEPTH,          /**< thickness integrated, m */
+    STERICOL_COLUMN_HEAT_MAGNITUDE, /**< heat gained plus heat lost, J/m2: below 0.3 of it a ratio to the heat
+                                       means nothing */
+    STERICOL_COLUMN_QUANTITIES      /**< how many there are */
 } stericol_column_quantity;
 
 /** The layer number that stands for all layers together, each depth counted once. */

@@ -137,6 +137,7 @@ static void write_results(stericol_sweep *sweep, const ending *end, size_t first
     result[STERICOL_COLUMN_EFFICIENCY] = meaningful ? sum[STERICOL_PART_THERMOSTERIC] / heat : (double)NAN;
     result[STERICOL_COLUMN_EXPANSION] = extent > 0.0 ? sum[STERICOL_PART_EXPANSION] / extent : (double)NAN;
     result[STERICOL_COLUMN_DEPTH] = metres;
+    result[STERICOL_COLUMN_HEAT_MAGNITUDE] = sum[STERICOL_SUM_TURNOVER];
     for (size_t q = 0; q < STERICOL_COLUMN_QUANTITIES; q++)
         stericol_plane(sweep, plane + q)[end->column] = result[q];
 }
