@@ -25,31 +25,31 @@ typedef enum stericol_salinity_kind {
 
 /* What is asked of an epoch; NULL and 0 mean "decide from the file".  Texts live as long as the epoch. */
 typedef struct stericol_epoch_request {
-    const char *label;        /* "earlier", "later", "field": for messages, and for the option names in them */
+    const char *label; /* "earlier", "later", "field": for messages, and for the option names in them */
     const char *const *paths; /* globs and lists already expanded */
     size_t path_count;
-    const char *time_window;                  /* "FROM..TO", or NULL */
-    size_t first_step, last_step;             /* 1-based over all files in time order; 0, 0: none given */
-    const char *temperature, *salinity;       /* names, or NULL */
+    const char *time_window;                    /* "FROM..TO", or NULL */
+    size_t first_step, last_step;               /* 1-based over all files in time order; 0, 0: none given */
+    const char *temperature, *salinity;         /* names, or NULL */
     stericol_temperature_kind temperature_kind; /* UNKNOWN: as the file says */
     stericol_salinity_kind salinity_kind;
-    const char *vertical_unit;       /* "m", "dbar" or NULL */
-    const char *const *select;       /* "NAME=INDEX", 1-based */
+    const char *vertical_unit; /* "m", "dbar" or NULL */
+    const char *const *select; /* "NAME=INDEX", 1-based */
     size_t select_count;
     const char *coordinates_file, *cell_area_file, *thickness_file, *mask_file; /* or NULL */
-    double least_times;              /* share of the members that a level needs */
-    bool wants_temperature;          /* false for a background salinity */
-    bool wants_salinity;             /* false: the file need not have one (and none is read) */
-    bool salinity_optional;          /* a missing salinity is no error: stericol_epoch_has_salinity() tells */
-    size_t cache_bytes;              /* for the decoder, in all */
+    double least_times;     /* share of the members that a level needs */
+    bool wants_temperature; /* false for a background salinity */
+    bool wants_salinity;    /* false: the file need not have one (and none is read) */
+    bool salinity_optional; /* a missing salinity is no error: stericol_epoch_has_salinity() tells */
+    size_t cache_bytes;     /* for the decoder, in all */
 } stericol_epoch_request;
 
 typedef struct stericol_epoch stericol_epoch;
 
 /*
- * Opens every file, chooses variables, axes, members, and checks that all files agree on one grid.  Every decision and assumption
- * goes out as a notice and is kept (stericol_epoch_assumption()).
- * STERICOL_INPUT: what cannot be used; STERICOL_NOTHING: a window or steps without data; STERICOL_MEMORY.
+ * Opens every file, chooses variables, axes, members, and checks that all files agree on one grid.  Every
+ * decision and assumption goes out as a notice and is kept (stericol_epoch_assumption()). STERICOL_INPUT:
+ * what cannot be used; STERICOL_NOTHING: a window or steps without data; STERICOL_MEMORY.
  */
 stericol_status stericol_epoch_open(stericol_context *context, const stericol_cf_units *units,
                                     const stericol_epoch_request *request, stericol_epoch **epoch);
@@ -61,11 +61,11 @@ bool stericol_epoch_has_salinity(const stericol_epoch *epoch);
 /* How a variable was chosen and read: for inspect, messages and provenance. */
 typedef struct stericol_epoch_variable {
     const char *file, *name;
-    const char *unit;       /* as written in the file; NULL for none */
+    const char *unit;          /* as written in the file; NULL for none */
     const char *standard_name; /* NULL for none */
-    const char *reason;     /* how it was recognised, one phrase */
-    int kind;               /* stericol_temperature_kind or stericol_salinity_kind */
-    bool kind_assumed;      /* the file does not say it */
+    const char *reason;        /* how it was recognised, one phrase */
+    int kind;                  /* stericol_temperature_kind or stericol_salinity_kind */
+    bool kind_assumed;         /* the file does not say it */
     bool unit_assumed;
 } stericol_epoch_variable;
 stericol_epoch_variable stericol_epoch_temperature(const stericol_epoch *epoch);
@@ -75,11 +75,11 @@ stericol_epoch_variable stericol_epoch_salinity(const stericol_epoch *epoch);
 typedef struct stericol_epoch_member {
     const char *temperature_file, *salinity_file; /* NULL where not read */
     bool dated;
-    double start, end;        /* day numbers of its interval; equal where only an instant is known */
-    double length;            /* days; the weight within its calendar month (1 where unknown) */
-    int month;                /* 1..12, 0 where members are annual or coarser, or not dated */
-    double month_weight;      /* length in days of that calendar month within the epoch (0 where month is 0) */
-    char text[64];            /* e.g. "2005-01" or "step 3" */
+    double start, end;   /* day numbers of its interval; equal where only an instant is known */
+    double length;       /* days; the weight within its calendar month (1 where unknown) */
+    int month;           /* 1..12, 0 where members are annual or coarser, or not dated */
+    double month_weight; /* length in days of that calendar month within the epoch (0 where month is 0) */
+    char text[64];       /* e.g. "2005-01" or "step 3" */
 } stericol_epoch_member;
 size_t stericol_epoch_member_count(const stericol_epoch *epoch);
 const stericol_epoch_member *stericol_epoch_member_at(const stericol_epoch *epoch, size_t index);
@@ -97,7 +97,8 @@ const char *stericol_epoch_assumption(const stericol_epoch *epoch, size_t index)
 size_t stericol_epoch_file_count(const stericol_epoch *epoch);
 const char *stericol_epoch_file(const stericol_epoch *epoch, size_t index, stericol_cf_identity *identity);
 
-/* Multiples of levels and rows that decode nothing twice (see stericol_cf_field_stride), over all variables. */
+/* Multiples of levels and rows that decode nothing twice (see stericol_cf_field_stride), over all variables.
+ */
 void stericol_epoch_stride(const stericol_epoch *epoch, size_t *levels, size_t *rows);
 /* Memory in use for `levels` levels of `rows` rows besides the caller's own buffers. */
 size_t stericol_epoch_bytes(const stericol_epoch *epoch, size_t levels, size_t rows);
@@ -105,16 +106,18 @@ size_t stericol_epoch_bytes(const stericol_epoch *epoch, size_t levels, size_t r
 /* What was met on one level, added up over calls. */
 typedef struct stericol_epoch_tally {
     stericol_cf_tally temperature, salinity;
-    unsigned long long zeros; /* points of the averaged state with T = 0 and S = 0 exactly (T = 0 where no S is read) */
+    unsigned long long
+        zeros; /* points of the averaged state with T = 0 and S = 0 exactly (T = 0 where no S is read) */
 } stericol_epoch_tally;
 
 /*
  * Averaged state of `levels` levels from level0 (grid order: surface down) and `rows` rows from row0:
- * temperature[level][row][column] in degC, salinity likewise in the units of its kind (practical 1, or g/kg), NaN missing,
+ * temperature[level][row][column] in degC, salinity likewise in the units of its kind (practical 1, or g/kg),
+ * NaN missing,
  * +-INFINITY rejected (outside -4..45 degC, 0..45).  Dry cells (mask) are NaN.  Either pointer may be NULL.
  * tally: [levels], or NULL.
- * Averaging (docs, "Epochs"): within each calendar month by the members' lengths, then over the months present by the months' lengths; a
- * value needs least_times of the members.
+ * Averaging (docs, "Epochs"): within each calendar month by the members' lengths, then over the months
+ * present by the months' lengths; a value needs least_times of the members.
  */
 stericol_status stericol_epoch_load(stericol_context *context, stericol_epoch *epoch, size_t level0,
                                     size_t levels, size_t row0, size_t rows, double *temperature,
@@ -127,8 +130,8 @@ stericol_status stericol_epoch_load_member(stericol_context *context, stericol_e
                                            stericol_epoch_tally *tally);
 
 /*
- * Where own_depths: depth of the sample and upper and lower limit of its cell, m positive down, [level][row][column]; NaN where
- * there is no cell.  upper and lower may be NULL.
+ * Where own_depths: depth of the sample and upper and lower limit of its cell, m positive down,
+ * [level][row][column]; NaN where there is no cell.  upper and lower may be NULL.
  */
 stericol_status stericol_epoch_load_depths(stericol_context *context, stericol_epoch *epoch, size_t level0,
                                            size_t levels, size_t row0, size_t rows, double *depth,
