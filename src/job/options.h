@@ -44,7 +44,7 @@ typedef struct stericol_option {
 
 /* What must hold between the options of a command.  A switch that is "no" counts as not given. */
 typedef enum stericol_rule_kind {
-    STERICOL_RULE_REQUIRED,    /* first must be given (or second, where second is not NULL) */
+    STERICOL_RULE_REQUIRED,    /* one of first, "a|b|c", must be given */
     STERICOL_RULE_EXCLUDES,    /* first and second are not given together */
     STERICOL_RULE_NEEDS,       /* first is only given together with second */
     STERICOL_RULE_NEEDS_VALUE, /* first is only given where second has the value `value` */
