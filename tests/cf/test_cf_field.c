@@ -263,8 +263,10 @@ static void every_storage_gives_the_same_values(void **state)
                 /* Every type meets a chunk shape, every shape meets a packed and a plain type. */
                 const bool thorough = encodings[e].type == NC_SHORT || encodings[e].type == NC_FLOAT;
 
-                if (made_formats[f].zarr && (s == 0 || s == ONE_BY_ONE || s != 1 + e % (SHAPES - 1)))
-                    continue; /* a file a chunk: a few shapes do */
+                if (made_formats[f].zarr && (e % 2 == 1 || s == 0 || s == ONE_BY_ONE || s != 1 + e % (SHAPES - 1)))
+                    continue; /* a file a chunk: some types in a few shapes do */
+                if (s == ONE_BY_ONE && encodings[e].type != NC_SHORT)
+                    continue;
                 if (s > 1 && !thorough && s != 1 + e % (SHAPES - 1))
                     continue;
                 make_fields(&made_formats[f], &encodings[e], shapes[s]);
