@@ -1,0 +1,5 @@
+#include "made_sea.h"
+int main(void)
+{
+    return 0;
+}
