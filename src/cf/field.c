@@ -104,8 +104,14 @@ stericol_status stericol_cf_field_open(stericol_context *context, stericol_cf_fi
     status = stericol_cf_rules_of(context, file, variable, &rules);
     if (status != STERICOL_OK)
         return status;
-    for (i = 0; i < variable->rank; i++)
-        assert(is_axis(axes, i) || axes->fixed[i] < file->dimensions[variable->dimension[i]].length);
+    for (i = 0; i < variable->rank; i++) {
+        const stericol_cf_dimension *dimension = &file->dimensions[variable->dimension[i]];
+
+        if (!is_axis(axes, i) && axes->fixed[i] >= dimension->length)
+            return stericol_fail(context, STERICOL_USAGE, file->path, variable->name, "choose another",
+                                 "its dimension %s has %zu entries, so that there is no entry %zu",
+                                 dimension->name, dimension->length, axes->fixed[i] + 1);
+    }
     opened = calloc(1, sizeof *opened);
     if (opened == NULL)
         return stericol_fail_memory(context, sizeof *opened, variable->name);

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /*
- * A NetCDF file as its header tells it: dimensions, variables, attributes as plain records; and the reading of
- * whole variables or parts of them as doubles.  Fields that are read level by level go through cf/field.h.
+ * A NetCDF file as its header tells it: dimensions, variables, attributes as plain records; and the reading
+ * of whole variables or parts of them as doubles.  Fields that are read level by level go through cf/field.h.
  *
  * NetCDF-C is not thread-safe: only one thread at a time may be inside this room.
  */
@@ -64,11 +64,11 @@ typedef struct stericol_cf_variable {
 typedef struct stericol_cf_file stericol_cf_file;
 
 /*
- * Opens `path` (a file; or file://...#mode=nczarr,... for a Zarr store; or the folder of a Zarr store) and reads
- * its whole header.  The first contact happens in a child process with limits on time and memory, so that a
- * damaged file that crashes, hangs or swells the NetCDF library is refused instead.
- * STERICOL_INPUT with a message when the file is absent, a folder that is no store, empty, not NetCDF,
- * truncated or damaged; STERICOL_MEMORY.  *file is NULL on failure.
+ * Opens `path` (a file; or file://...#mode=nczarr,... for a Zarr store; or the folder of a Zarr store) and
+ * reads its whole header.  The first contact happens in a child process with limits on time and memory, so
+ * that a damaged file that crashes, hangs or swells the NetCDF library is refused instead. STERICOL_INPUT
+ * with a message when the file is absent, a folder that is no store, empty, not NetCDF, truncated or damaged;
+ * STERICOL_MEMORY.  *file is NULL on failure.
  */
 stericol_status stericol_cf_open(stericol_context *context, const char *path, stericol_cf_file **file);
 void stericol_cf_close(stericol_cf_file *file);
@@ -83,9 +83,9 @@ size_t stericol_cf_variable_count(const stericol_cf_file *file);
 const stericol_cf_variable *stericol_cf_variable_at(const stericol_cf_file *file, size_t index);
 
 /*
- * The variable that `name` means when it stands in an attribute of `near` (CF 1.10, section 2.7: its own group,
- * then the groups above; a path is taken as it is).  near == NULL: `name` as a user writes it: the exact name, else the only
- * variable of that short name anywhere.  NULL when there is none.
+ * The variable that `name` means when it stands in an attribute of `near` (CF 1.10, section 2.7: its own
+ * group, then the groups above; a path is taken as it is).  near == NULL: `name` as a user writes it: the
+ * exact name, else the only variable of that short name anywhere.  NULL when there is none.
  */
 const stericol_cf_variable *stericol_cf_find(const stericol_cf_file *file, const char *name,
                                              const stericol_cf_variable *near);
@@ -97,32 +97,35 @@ const stericol_cf_attribute *stericol_cf_global(const stericol_cf_file *file, co
 const char *stericol_cf_global_text(const stericol_cf_file *file, const char *name);
 
 /* The product of the variable's dimension lengths (1 for a scalar); false on overflow. */
-bool stericol_cf_value_count(const stericol_cf_file *file, const stericol_cf_variable *variable, size_t *count);
+bool stericol_cf_value_count(const stericol_cf_file *file, const stericol_cf_variable *variable,
+                             size_t *count);
 
 /*
- * Reads start/count (rank of each; NULL, NULL: all of it) in the file's own order: unpacked by scale_factor and
- * add_offset, _Unsigned honoured, missing values NaN by the rules of cf/field.h; units as in the file.
- * STERICOL_INPUT when the variable is text or of a user type, when a part lies outside, or when reading fails.
+ * Reads start/count (rank of each; NULL, NULL: all of it) in the file's own order: unpacked by scale_factor
+ * and add_offset, _Unsigned honoured, missing values NaN by the rules of cf/field.h; units as in the file.
+ * STERICOL_INPUT when the variable is text or of a user type, when a part lies outside, or when reading
+ * fails.
  */
 stericol_status stericol_cf_read(stericol_context *context, stericol_cf_file *file,
-                                 const stericol_cf_variable *variable, const size_t *start, const size_t *count,
-                                 double *values);
+                                 const stericol_cf_variable *variable, const size_t *start,
+                                 const size_t *count, double *values);
 
 /* As stericol_cf_read() for all of a variable of at most `most` values; *values is allocated (free()). */
 stericol_status stericol_cf_read_all(stericol_context *context, stericol_cf_file *file,
                                      const stericol_cf_variable *variable, size_t most, double **values,
                                      size_t *count);
 
-/* All texts of a char variable (last dimension = characters, blanks and zeros at the end cut) or string variable. */
+/* All texts of a char variable (last dimension = characters, blanks and zeros at the end cut) or string
+ * variable. */
 stericol_status stericol_cf_read_texts(stericol_context *context, stericol_cf_file *file,
                                        const stericol_cf_variable *variable, char ***texts, size_t *count);
 void stericol_cf_free_texts(char **texts, size_t count);
 
-/* Name, size and time of change, as provenance wants them; read when the file was opened. */
+/* Size and time of change, as provenance wants them; read when the file was opened. */
 typedef struct stericol_cf_identity {
-    unsigned long long bytes;
-    long long changed;   /* seconds since 1970-01-01 UTC */
-    const char *id;      /* global attribute id, tracking_id or uuid; NULL where there is none */
+    unsigned long long bytes; /* 0 for a Zarr store, which is a folder */
+    long long changed;        /* seconds since 1970-01-01 UTC */
+    const char *id;           /* global attribute id, tracking_id or uuid; NULL where there is none */
 } stericol_cf_identity;
 stericol_cf_identity stericol_cf_identity_of(const stericol_cf_file *file);
 

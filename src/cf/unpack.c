@@ -22,12 +22,12 @@
         for (i = 0; i < count; i++) {                                                                        \
             const TYPE x = raw[i];                                                                           \
             const double value = (double)x * scale + offset;                                                 \
-            values[i] = (x >= low) & (x <= high) ? value : (double)NAN;                                      \
+            values[i] = ((x >= low) & (x <= high)) ? value : (double)NAN;                                    \
         }                                                                                                    \
         for (f = 0; f < rules->fills; f++) {                                                                 \
             const TYPE from = (TYPE)rules->fill_low[f].KIND, to = (TYPE)rules->fill_high[f].KIND;            \
             for (i = 0; i < count; i++)                                                                      \
-                values[i] = (raw[i] >= from) & (raw[i] <= to) ? (double)NAN : values[i];                     \
+                values[i] = ((raw[i] >= from) & (raw[i] <= to)) ? (double)NAN : values[i];                   \
         }                                                                                                    \
     }
 

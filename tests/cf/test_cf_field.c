@@ -263,7 +263,8 @@ static void every_storage_gives_the_same_values(void **state)
                 /* Every type meets a chunk shape, every shape meets a packed and a plain type. */
                 const bool thorough = encodings[e].type == NC_SHORT || encodings[e].type == NC_FLOAT;
 
-                if (made_formats[f].zarr && (e % 2 == 1 || s == 0 || s == ONE_BY_ONE || s != 1 + e % (SHAPES - 1)))
+                if (made_formats[f].zarr &&
+                    (e % 2 == 1 || s == 0 || s == ONE_BY_ONE || s != 1 + e % (SHAPES - 1)))
                     continue; /* a file a chunk: some types in a few shapes do */
                 if (s == ONE_BY_ONE && encodings[e].type != NC_SHORT)
                     continue;
@@ -382,6 +383,34 @@ static void values_outside_the_limits_are_told_apart(void **state)
     unwatch(&seen);
 }
 
+static void a_member_that_is_not_there_is_refused(void **state)
+{
+    const stericol_cf_field_axes axes = {
+        STERICOL_CF_NO_AXIS, STERICOL_CF_NO_AXIS, STERICOL_CF_NO_AXIS, 1, {3}};
+    const stericol_cf_conversion same = {1.0, 0.0, -1.0, 1.0};
+    int handle = made_create(&made_formats[0], "member.nc"), dimension[2], variable;
+    stericol_cf_field *field;
+    stericol_cf_file *file;
+    watched seen;
+
+    (void)state;
+    must(nc_def_dim(handle, "member", 3, &dimension[0]));
+    must(nc_def_dim(handle, "x", 2, &dimension[1]));
+    must(nc_def_var(handle, "t", NC_FLOAT, 2, dimension, &variable));
+    must(nc_close(handle));
+    watch(&seen);
+    file = open_well(&seen, made_path("member.nc"));
+    assert_int_equal(
+        stericol_cf_field_open(seen.context, file, stericol_cf_variable_at(file, 0), &axes, &same, 0, &field),
+        STERICOL_USAGE);
+    assert_null(field);
+    assert_non_null(strstr(
+        stericol_context_message(seen.context),
+        "member.nc: t: its dimension member has 3 entries, so that there is no entry 4; choose another"));
+    stericol_cf_close(file);
+    unwatch(&seen);
+}
+
 static void text_is_no_field(void **state)
 {
     const stericol_cf_field_axes axes = {
@@ -475,6 +504,7 @@ int main(void)
         cmocka_unit_test(every_storage_gives_the_same_values),
         cmocka_unit_test(contiguous_files_tell_their_stride),
         cmocka_unit_test(values_outside_the_limits_are_told_apart),
+        cmocka_unit_test(a_member_that_is_not_there_is_refused),
         cmocka_unit_test(text_is_no_field),
         cmocka_unit_test(large_slabs_are_read_in_pieces),
     };
