@@ -9,6 +9,7 @@
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <unistd.h>
 
 /* What runs each command of the option tables. */
 static const struct {
@@ -129,5 +130,10 @@ int main(int argc, char **argv)
     stericol_context_free(context);
     if (status == STERICOL_INTERRUPTED)
         stericol_signals_raise_again();
+    if (status == STERICOL_OUTPUT) {
+        /* After a write that failed HDF5 (seen with 1.10) can crash in what it does at exit. */
+        fflush(NULL);
+        _exit(STERICOL_OUTPUT);
+    }
     return (int)status;
 }

@@ -241,6 +241,8 @@ stericol_status stericol_publish(stericol_session *session, const stericol_setup
             stericol_result_new(session->context, output, stericol_settings_on(session->settings, "replace"),
                                 &publication.layout, &publication.result);
     if (status == STERICOL_OK)
+        status = stericol_session_start_workers(session);
+    if (status == STERICOL_OK)
         status = stericol_pair_run(session->context, session->executor, &setup->pair, publication.result,
                                    &publication.layout, stericol_session_tick, session, &publication.outcome);
     if (status == STERICOL_OK)

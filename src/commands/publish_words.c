@@ -83,13 +83,15 @@ void stericol_publish_warnings(stericol_session *session, const stericol_publica
     for (size_t r = 0; r < publication->region_count; r++) {
         const stericol_pair_sums *sums = &outcome->sums[publication->chosen[r] * (layers + 1)];
 
-        for (size_t layer = 0; layer < layers; layer++)
+        for (size_t layer = 0; layers > 1 && layer < layers; layer++)
             differ = differ || fabs(sums[layer].covered_area - sums[layers].covered_area) >
                                    1e-12 * sums[layer].covered_area;
         if (sums[layers].incomplete > 0 && r == whole_region(publication))
-            stericol_session_warn(
-                session, "%s: %zu columns have data but are left out, since a layer of theirs is incomplete",
-                publication->region_names[r], sums[layers].incomplete);
+            stericol_session_warn(session,
+                                  "%s: %zu columns have data but are left out: a layer of theirs is "
+                                  "incomplete, or a lone sample "
+                                  "leaves nothing to integrate",
+                                  publication->region_names[r], sums[layers].incomplete);
     }
     if (differ)
         stericol_session_warn(

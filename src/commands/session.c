@@ -14,12 +14,27 @@ static bool has_option(const stericol_session *session, const char *name)
     return stericol_command_option(stericol_settings_command(session->settings), name) != NULL;
 }
 
-/* Every notice is kept for provenance and logged; notes are printed only as warnings are when they matter. */
+/* Whether `lines` holds this very line. */
+static bool holds_line(const stericol_text *lines, const char *line)
+{
+    const char *all = stericol_text_string(lines);
+    size_t length = strlen(line);
+
+    for (const char *at = strstr(all, line); at != NULL; at = strstr(at + 1, line))
+        if ((at == all || at[-1] == '\n' || (at - all >= 9 && strncmp(at - 9, "warning: ", 9) == 0)) &&
+            at[length] == '\n')
+            return true;
+    return false;
+}
+
+/* Every notice is kept for provenance, logged and printed; once, though both epochs may give cause for it. */
 static void take_notice(void *user, stericol_notice_level level, const char *text)
 {
     stericol_session *session = user;
     bool warning = level == STERICOL_WARNING;
 
+    if (holds_line(&session->assumptions, text))
+        return;
     stericol_text_format(&session->assumptions, "%s%s\n", warning ? "warning: " : "", text);
     stericol_log_write(session->log, warning ? STERICOL_LOG_WARNING : STERICOL_LOG_INFO,
                        warning ? "warning" : "note", text, NULL, 0);
@@ -58,13 +73,12 @@ static stericol_status open_progress(stericol_session *session)
     return stericol_progress_new(session->context, &options, &session->progress);
 }
 
-static stericol_status open_workers(stericol_session *session)
+stericol_status stericol_session_start_workers(stericol_session *session)
 {
     size_t threads = 0;
     stericol_status status;
 
-    session->executor = &stericol_serial_executor;
-    if (!has_option(session, "threads"))
+    if (session->workers != NULL)
         return STERICOL_OK;
     if (stericol_settings_is_set(session->settings, "threads"))
         threads = (size_t)stericol_settings_whole(session->settings, "threads");
@@ -79,7 +93,8 @@ stericol_status stericol_session_open(stericol_session *session, const stericol_
 {
     stericol_status status;
 
-    *session = (stericol_session){.settings = settings, .command_line = command_line};
+    *session = (stericol_session){
+        .settings = settings, .command_line = command_line, .executor = &stericol_serial_executor};
     session->context = stericol_context_new();
     if (session->context == NULL)
         return STERICOL_MEMORY;
@@ -90,8 +105,6 @@ stericol_status stericol_session_open(stericol_session *session, const stericol_
         status = open_log(session);
     if (status == STERICOL_OK)
         status = stericol_cf_units_new(session->context, &session->units);
-    if (status == STERICOL_OK)
-        status = open_workers(session);
     if (status == STERICOL_OK)
         status = open_progress(session);
     return status;
@@ -192,7 +205,7 @@ bool stericol_session_tick(void *user, double done, double whole)
 
 size_t stericol_session_memory(const stericol_session *session)
 {
-    size_t given = stericol_settings_size(session->settings, "memory");
+    size_t given = has_option(session, "memory") ? stericol_settings_size(session->settings, "memory") : 0;
 
     return given != 0 ? given : stericol_default_memory();
 }

@@ -37,6 +37,11 @@ typedef struct stericol_session {
  * called. */
 stericol_status stericol_session_open(stericol_session *session, const stericol_settings *settings,
                                       const char *command_line);
+/*
+ * Starts the threads that --threads asks for; until then the executor is the serial one.  Files are opened
+ * before: their first contact is in a forked child, and a fork is safest while there is one thread.
+ */
+stericol_status stericol_session_start_workers(stericol_session *session);
 /* Closes everything and returns `status`, or what closing the log gave where that was STERICOL_OK. */
 stericol_status stericol_session_close(stericol_session *session, stericol_status status);
 

@@ -355,7 +355,8 @@ static stericol_status make_scenario(stericol_session *session, stericol_setup *
     size_t count = 1;
 
     if (path != NULL) {
-        stericol_status status = stericol_profile_read(session->context, path, &setup->profile, &count);
+        stericol_status status =
+            stericol_profile_read(session->context, session->units, path, &setup->profile, &count);
 
         if (status != STERICOL_OK)
             return status;
@@ -435,6 +436,8 @@ void stericol_setup_free(stericol_setup *setup)
         stericol_paths_free(&setup->paths[e]);
     }
     stericol_epoch_close(setup->background);
+    stericol_paths_free(&setup->background_paths);
+    stericol_paths_free(&setup->anomaly_paths);
     stericol_epoch_close(setup->anomaly);
     stericol_regrid_field_free(setup->background_field);
     stericol_regrid_field_free(setup->anomaly_field);

@@ -12,7 +12,7 @@
 typedef struct stericol_setup {
     stericol_water water;
     stericol_layer *layers;
-    stericol_paths paths[2];
+    stericol_paths paths[2], background_paths, anomaly_paths;
     stericol_epoch *epochs[2];  /* scenario: the first alone */
     stericol_epoch *background; /* --background-salinity, else NULL */
     stericol_epoch *anomaly;    /* --salinity-anomaly, else NULL */

@@ -89,15 +89,15 @@ done:
 }
 
 static stericol_status open_field(stericol_session *session, const char *option, bool anomaly,
-                                  stericol_epoch **epoch, stericol_regrid_field **field)
+                                  stericol_paths *paths, stericol_epoch **epoch,
+                                  stericol_regrid_field **field)
 {
-    stericol_paths paths = {0};
     stericol_epoch_request request;
-    stericol_status status = stericol_settings_paths(session->context, session->settings, option, &paths);
+    stericol_status status = stericol_settings_paths(session->context, session->settings, option, paths);
 
     if (status != STERICOL_OK)
         return status;
-    stericol_setup_request(session->settings, option, &paths, &request);
+    stericol_setup_request(session->settings, option, paths, &request);
     request.wants_temperature = false;
     request.temperature = NULL;
     request.salinity_anomaly = anomaly;
@@ -108,7 +108,6 @@ static stericol_status open_field(stericol_session *session, const char *option,
     status = stericol_epoch_open(session->context, session->units, &request, epoch);
     if (status == STERICOL_OK)
         status = make_field(session, *epoch, field);
-    stericol_paths_free(&paths);
     return status;
 }
 
@@ -125,12 +124,13 @@ stericol_status stericol_setup_backgrounds(stericol_session *session, stericol_s
             "give files with their own salinity, or on levels of one depth",
             "has depths that differ from column to column, which a background field cannot follow");
     if (wants_background) {
-        status =
-            open_field(session, "background-salinity", false, &setup->background, &setup->background_field);
+        status = open_field(session, "background-salinity", false, &setup->background_paths,
+                            &setup->background, &setup->background_field);
         setup->pair.background_salinity = setup->background_field;
     }
     if (status == STERICOL_OK && wants_anomaly) {
-        status = open_field(session, "salinity-anomaly", true, &setup->anomaly, &setup->anomaly_field);
+        status = open_field(session, "salinity-anomaly", true, &setup->anomaly_paths, &setup->anomaly,
+                            &setup->anomaly_field);
         setup->pair.salinity_anomaly = setup->anomaly_field;
     }
     return status;
