@@ -1,5 +1,349 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What cannot be used is refused with a message that says what is wrong and what to do. */
 #include "made_sea.h"
+
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+static void refused(const sea *how, const char *message)
+{
+    try one;
+    try_begin(&one, sea_write(how));
+    assert_open_fails(&one, STERICOL_INPUT, message);
+}
+
+static void test_units(void **state)
+{
+    (void)state;
+    sea how = sea_plain("wrong.nc");
+    how.temperature.units = "degrees_of_frost";
+    refused(&how,
+            "theta: the unit \"degrees_of_frost\" is not known; correct the units attribute, or remove it");
+    how = sea_plain("wrong.nc");
+    how.temperature.units = "PSU";
+    refused(&how, "theta: the unit \"PSU\" is not one of temperature; correct the units attribute, or name "
+                  "another variable");
+    how = sea_plain("wrong.nc");
+    how.salinity.units = "m";
+    refused(
+        &how,
+        "sal: the unit \"m\" is not one of salinity; correct the units attribute, or name another variable");
+}
+
+static void test_vertical(void **state)
+{
+    (void)state;
+    static const double repeated[4] = {5.0, 20.0, 20.0, 100.0}, unordered[4] = {5.0, 20.0, 10.0, 100.0},
+                        gap[4] = {5.0, (double)NAN, 50.0, 100.0}, mixed[4] = {-5.0, 0.0, 5.0, 10.0},
+                        deep[4] = {5.0, 20.0, 100.0, 50000.0}, number[4] = {1.0, 2.0, 3.0, 4.0};
+    sea how = sea_plain("vertical.nc");
+    how.depth = number;
+    how.depth_units = NULL;
+    refused(&how, "depth: the vertical axis has no units (values 1 to 4); say what the levels are with "
+                  "--vertical-unit m "
+                  "or --vertical-unit dbar");
+    how.depth_units = "level";
+    refused(&how,
+            "depth: the unit \"level\" is neither a length nor a pressure; say what the levels are with "
+            "--vertical-unit m or --vertical-unit dbar");
+    how = sea_plain("vertical.nc");
+    how.depth = repeated;
+    refused(&how, "depth: level 3 (20 m) breaks the order of the axis; correct the axis");
+    how.depth = unordered;
+    refused(&how, "depth: level 3 (10 m) breaks the order of the axis; correct the axis");
+    how.depth = gap;
+    refused(&how, "depth: level 2 of 4 is missing; correct the axis");
+    how.depth = deep;
+    refused(&how,
+            "depth: level 4 at 50000 m lies deeper than any sea; correct its units attribute or its values");
+    how.depth = mixed;
+    refused(&how,
+            "depth: level 1 lies 5 m above the sea surface; correct its positive attribute or its values");
+    how.depth_standard_name = NULL;
+    refused(&how, "depth: values on both sides of 0 and no positive attribute; add a positive attribute");
+    /* `positive` wins over the sign: depths that are called heights lie in the air. */
+    how = sea_plain("vertical.nc");
+    try one;
+    const char *path = sea_write(&how);
+    sea_attribute(path, "depth", "positive", "up");
+    try_begin(&one, path);
+    assert_open_fails(
+        &one, STERICOL_INPUT,
+        "depth: level 1 lies 5 m above the sea surface; correct its positive attribute or its values");
+}
+
+static void test_horizontal(void **state)
+{
+    (void)state;
+    sea how = sea_plain("horizontal.nc");
+    static const struct {
+        const char *variable;
+        size_t index;
+        double value;
+        const char *message;
+    } cases[] = {
+        {"lat", 4, 90.5, "lat: latitude number 5 is 90.5, outside -90..90 degrees; correct the values"},
+        {"lat", 2, (double)NAN,
+         "lat: latitude number 3 of 5 is missing; give a file with all positions with --coordinates"},
+        {"lat", 2, -20.0, "lat: latitude number 3 (-20) stands there twice; correct the axis"},
+        {"lat", 2, 30.0, "lat: latitude number 4 (20) breaks the order of the axis; correct the axis"},
+        {"lon", 1, 30.0, "lon: longitude number 2 (30) stands there twice; correct the axis"},
+        {"lon", 3, 100.0, "lon: longitude number 4 (100) breaks the order of the axis; correct the axis"},
+        {"lon", 5, (double)NAN,
+         "lon: longitude number 6 of 6 is missing; give a file with all positions with --coordinates"},
+    };
+    try one;
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        const char *path = sea_write(&how);
+        sea_put(path, cases[i].variable, cases[i].index, cases[i].value);
+        try_begin(&one, path);
+        assert_open_fails(&one, STERICOL_INPUT, cases[i].message);
+    }
+    /* Within the rounding of a float the pole is the pole. */
+    const char *path = sea_write(&how);
+    sea_put(path, "lat", 4, 90.0000001);
+    try_begin(&one, path);
+    try_open(&one);
+    try_end(&one);
+    path = sea_write(&how);
+    sea_attribute(path, "lat", "units", "m");
+    try_begin(&one, path);
+    assert_open_fails(
+        &one, STERICOL_INPUT,
+        "lat: the unit \"m\" is no angle, so it is no latitude; correct the units attribute, or give another "
+        "file with --coordinates");
+}
+
+static void test_dimensions(void **state)
+{
+    (void)state;
+    sea how = sea_plain("dimensions.nc");
+    try one;
+    how.order = "tyx";
+    refused(&how, "theta: has no vertical dimension, so it holds no columns; give a file with levels");
+    try_begin(&one, sea_write(&how));
+    one.request.temperature = "theta";
+    assert_open_fails(
+        &one, STERICOL_INPUT,
+        "theta: no vertical dimension among its dimensions (time, lat, lon); give a file with levels");
+    how.order = "tzx";
+    refused(&how, "theta: no latitude was found for it; give the file that holds them with --coordinates");
+
+    /* An extra dimension. */
+    const char *path = made_path("ensemble.nc");
+    const made_format format = {"", NC_NETCDF4, true, true, false};
+    static const char *const names[4] = {"member", "depth", "lat", "lon"};
+    static const size_t lengths[4] = {3, 2, 2, 2};
+    const double depths[2] = {5.0, 10.0}, places[2] = {10.0, 20.0};
+    int file = made_create(&format, "ensemble.nc"), dimension[4], axis[4], temperature, salinity;
+    double values[24];
+    for (int i = 0; i < 24; i++)
+        values[i] = i;
+    for (int i = 0; i < 4; i++)
+        must(nc_def_dim(file, names[i], lengths[i], &dimension[i]));
+    for (int i = 1; i < 4; i++)
+        must(nc_def_var(file, names[i], NC_DOUBLE, 1, &dimension[i], &axis[i]));
+    must(nc_put_att_text(file, axis[1], "units", 1, "m"));
+    must(nc_def_var(file, "temp", NC_DOUBLE, 4, dimension, &temperature));
+    must(nc_def_var(file, "salt", NC_DOUBLE, 4, dimension, &salinity));
+    must(nc_put_var_double(file, axis[1], depths));
+    must(nc_put_var_double(file, axis[2], places));
+    must(nc_put_var_double(file, axis[3], places));
+    must(nc_put_var_double(file, temperature, values));
+    must(nc_put_var_double(file, salinity, values));
+    must(nc_close(file));
+    try_begin(&one, path);
+    assert_open_fails(
+        &one, STERICOL_INPUT,
+        "temp: its dimension member of length 3 is neither time, depth nor horizontal; pick one with "
+        "--select member=INDEX");
+    static const char *selects[3] = {"member=4", "member=2", "menber=2"};
+    for (int i = 0; i < 3; i++) {
+        try_begin(&one, path);
+        one.request.select = &selects[i];
+        one.request.select_count = 1;
+        if (i == 0)
+            assert_open_fails(
+                &one, STERICOL_INPUT,
+                "member: --select member=4 is not a whole number from 1 to 3; give an index within it");
+        if (i == 2)
+            assert_open_fails(
+                &one, STERICOL_INPUT,
+                "temp: its dimension member of length 3 is neither time, depth nor horizontal; pick one "
+                "with --select member=INDEX");
+        if (i != 1)
+            continue;
+        try_open(&one);
+        double plane[4];
+        assert_int_equal(stericol_epoch_load(one.seen.context, one.epoch, 1, 1, 0, 2, plane, NULL, NULL),
+                         STERICOL_OK);
+        for (int p = 0; p < 4; p++)
+            assert_same_number(plane[p], 8.0 + 4.0 + p); /* second member, second level */
+        assert_assumed(&one, "temp: index 2 of 3 of its dimension member");
+        try_end(&one);
+    }
+    how = sea_plain("dimensions.nc");
+    static const char *nowhere = "member=1";
+    try_begin(&one, sea_write(&how));
+    one.request.select = &nowhere;
+    one.request.select_count = 1;
+    assert_open_fails(&one, STERICOL_INPUT,
+                      "--select member=1 names no dimension of this file; name one of the file's dimensions");
+}
+
+static void test_no_times(void **state)
+{
+    (void)state;
+    sea how = sea_plain("never.nc");
+    how.times = 0; /* NetCDF-4 takes length 0 as unlimited */
+    refused(&how, "theta: its time dimension has length 0; give a file that holds data");
+    static const double stamps[3] = {15.5, (double)NAN, 74.5};
+    how = sea_plain("never.nc");
+    how.time = stamps;
+    refused(&how, "time: time 2 of 3 is missing; correct the axis");
+}
+
+static void test_grids_differ(void **state)
+{
+    (void)state;
+    sea how = sea_plain("first.nc"), other = sea_plain("second.nc");
+    stericol_text text = {0};
+    try one;
+    other.west = 31.0;
+    other.temperature.name = how.salinity.name = NULL;
+    try_begin(&one, sea_write(&how));
+    try_add(&one, sea_write(&other));
+    stericol_text_format(
+        &text,
+        "sal: its grid is not that of %s: longitude number 1 differs: 30 against 31; give files of one grid",
+        one.paths[0]);
+    assert_open_fails_at(&one, STERICOL_INPUT, made_path("second.nc"), stericol_text_string(&text));
+    stericol_text_free(&text);
+    other = sea_plain("second.nc");
+    other.temperature.standard_name = "sea_water_temperature";
+    how = sea_plain("first.nc");
+    try_begin(&one, sea_write(&how));
+    try_add(&one, sea_write(&other));
+    stericol_text_format(
+        &text, "theta: in situ temperature here, but potential temperature in %s; give files of one kind",
+        one.paths[0]);
+    assert_open_fails_at(&one, STERICOL_INPUT, made_path("second.nc"), stericol_text_string(&text));
+    stericol_text_free(&text);
+    try_begin(&one, sea_write(&how));
+    try_add(&one, TEST_BUILD_FOLDER "/is_not_there.nc");
+    assert_int_equal(stericol_epoch_open(one.seen.context, one.units, &one.request, &one.epoch),
+                     STERICOL_INPUT);
+    assert_non_null(strstr(stericol_context_message(one.seen.context), "is_not_there.nc: "));
+    try_end(&one);
+}
+
+/* ---- values that cannot be what they are called ---- */
+
+static double fill_like(size_t t, size_t k, size_t j, size_t i)
+{
+    return k == 1 && i < 2 ? -99.0 : sea_temperature(t, k, j, i);
+}
+
+static double few_bad(size_t t, size_t k, size_t j, size_t i)
+{
+    return j == 0 && i < 2 ? 60.0 : sea_temperature(t, k, j, i);
+}
+
+static void assert_load_fails(const sea *how, size_t level, const char *message)
+{
+    double temperature[SEA_POINTS], salinity[SEA_POINTS];
+    stericol_text expected = {0};
+    try one;
+    try_begin(&one, sea_write(how));
+    try_open(&one);
+    stericol_text_format(&expected, "%s: %s", one.paths[0], message);
+    assert_int_equal(
+        stericol_epoch_load(one.seen.context, one.epoch, level, 1, 0, SEA_ROWS, temperature, salinity, NULL),
+        STERICOL_INPUT);
+    assert_string_equal(stericol_context_message(one.seen.context), stericol_text_string(&expected));
+    stericol_text_free(&expected);
+    try_end(&one);
+}
+
+static void test_values(void **state)
+{
+    (void)state;
+    sea how = sea_plain("values.nc");
+    how.temperature.offset = 273.15;
+    assert_load_fails(
+        &how, 1,
+        "theta: 30 of 30 values at 20 m (2005-01) cannot be sea temperatures with the unit \"degC\": they "
+        "range "
+        "from 289.15 to 290.775 after conversion; these look like kelvin; correct the units attribute");
+    how.temperature.units = NULL;
+    assert_load_fails(
+        &how, 1,
+        "theta: 30 of 30 values at 20 m (2005-01) cannot be sea temperatures without units: they range from "
+        "289.15 to 290.775 after conversion; these look like kelvin; correct the units attribute");
+    how = sea_plain("values.nc");
+    how.temperature.units = "K";
+    assert_load_fails(
+        &how, 0,
+        "theta: 30 of 30 values at 5 m (2005-01) cannot be sea temperatures with the unit \"K\": they range "
+        "from "
+        "-253.15 to -251.525 after conversion; these look like degrees Celsius called kelvin; correct the "
+        "units attribute");
+    how = sea_plain("values.nc");
+    how.temperature.value = fill_like;
+    assert_load_fails(
+        &how, 1,
+        "theta: 10 of 30 values at 20 m (2005-01) cannot be sea temperatures with the unit \"degC\": they "
+        "range "
+        "from -99 to 17.625 after conversion; correct the units or the packing of the variable, or name "
+        "another with --temperature");
+    how = sea_plain("values.nc");
+    how.salinity.scale = 0.001;
+    assert_load_fails(
+        &how, 0,
+        "sal: 30 of 30 values at 5 m (2005-01) cannot be salinities with the unit \"1\": they range from "
+        "0.033375 to 0.0345 after conversion; these look like a mass fraction (kg/kg); correct the units "
+        "attribute");
+    how.salinity.scale = 1000.0;
+    assert_load_fails(
+        &how, 0,
+        "sal: 30 of 30 values at 5 m (2005-01) cannot be salinities with the unit \"1\": they range from "
+        "33375 to "
+        "34500 after conversion; these look a thousand times too large; correct the units attribute");
+}
+
+/* A few bad values are rejected one by one; without units even one is too many. */
+static void test_few_bad_values(void **state)
+{
+    (void)state;
+    sea how = sea_plain("few.nc");
+    double plane[SEA_POINTS];
+    try one;
+    how.temperature.value = few_bad;
+    try_begin(&one, sea_write(&how));
+    one.request.first_step = one.request.last_step = 1;
+    try_open(&one);
+    try_load(&one, 0, plane, NULL);
+    assert_same_number(plane[0], (double)INFINITY);
+    assert_same_number(plane[1], (double)INFINITY);
+    assert_same_number(plane[2], sea_temperature(0, 0, 0, 2));
+    try_end(&one);
+    how.temperature.units = NULL;
+    assert_load_fails(
+        &how, 0,
+        "theta: 2 of 30 values at 5 m (2005-01) cannot be sea temperatures without units: they range from "
+        "20.25 "
+        "to 60 after conversion; correct the units or the packing of the variable, or name another with "
+        "--temperature");
+}
+
 int main(void)
 {
-    return 0;
+    const struct CMUnitTest tests[] = {
+        cmocka_unit_test(test_units),      cmocka_unit_test(test_vertical),
+        cmocka_unit_test(test_horizontal), cmocka_unit_test(test_dimensions),
+        cmocka_unit_test(test_no_times),   cmocka_unit_test(test_grids_differ),
+        cmocka_unit_test(test_values),     cmocka_unit_test(test_few_bad_values),
+    };
+    return cmocka_run_group_tests(tests, NULL, NULL);
 }
