@@ -247,35 +247,38 @@ static void change_piece(const stericol_pair_work *work, const stericol_pair_pie
     }
 }
 
-/* How many points of a piece lie outside the equation's own range; looked at one by one only where the
- * extremes do. */
+/* The smallest and largest of some values; a NaN loses every comparison and is passed over. */
+typedef struct extremes {
+    double low, high;
+} extremes;
+
+static extremes extremes_of(const double *values, size_t count)
+{
+    double low = INFINITY, high = -INFINITY;
+
+    for (size_t i = 0; i < count; i++) {
+        low = values[i] < low ? values[i] : low;
+        high = values[i] > high ? values[i] : high;
+    }
+    return (extremes){low, high};
+}
+
+/*
+ * How many points of a piece lie outside the equation's own range.  The range is a box, so the points are
+ * looked at one by one only where their extremes lie outside.
+ */
 static size_t count_outside(const stericol_water *water, const stericol_pair_piece *piece,
                             const double *salinity, const double *temperature)
 {
-    double low_s = INFINITY, high_s = -INFINITY, low_t = INFINITY, high_t = -INFINITY;
-    double low_p = piece->pressure, high_p = piece->pressure;
+    extremes s = extremes_of(salinity, piece->count), t = extremes_of(temperature, piece->count);
+    extremes p = piece->pressures == NULL ? (extremes){piece->pressure, piece->pressure}
+                                          : extremes_of(piece->pressures, piece->count);
     size_t outside = 0;
 
-    for (size_t i = 0; i < piece->count; i++) {
-        if (!isfinite(salinity[i]) || !isfinite(temperature[i]))
-            continue;
-        low_s = fmin(low_s, salinity[i]);
-        high_s = fmax(high_s, salinity[i]);
-        low_t = fmin(low_t, temperature[i]);
-        high_t = fmax(high_t, temperature[i]);
-    }
-    if (low_s > high_s)
+    if (s.low > s.high || t.low > t.high)
         return 0;
-    if (piece->pressures != NULL) {
-        low_p = INFINITY;
-        high_p = -INFINITY;
-        for (size_t i = 0; i < piece->count; i++) {
-            low_p = fmin(low_p, piece->pressures[i]);
-            high_p = fmax(high_p, piece->pressures[i]);
-        }
-    }
-    if (stericol_in_valid_range(water, low_s, low_t, low_p) &&
-        stericol_in_valid_range(water, high_s, high_t, high_p))
+    if (stericol_in_valid_range(water, s.low, t.low, p.low) &&
+        stericol_in_valid_range(water, s.high, t.high, p.high))
         return 0;
     for (size_t i = 0; i < piece->count; i++)
         if (isfinite(salinity[i]) && isfinite(temperature[i]) &&
