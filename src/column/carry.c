@@ -66,22 +66,23 @@ void stericol_carry_down(stericol_sweep *sweep, size_t from, size_t count)
     if (!sweep->sizes.carries)
         return;
     const bool cells = sweep->options.vertical == STERICOL_VERTICAL_CELLS;
-    double target[STERICOL_STRIP], at[STERICOL_STRIP], part[STERICOL_PARTS][STERICOL_STRIP];
+    double target[STERICOL_STRIP], at[STERICOL_STRIP], use[STERICOL_STRIP];
+    double part[STERICOL_PARTS][STERICOL_STRIP];
     double *reached = sweep->reached + from;
     stericol_piece piece;
     bool any = false;
     for (size_t i = 0; i < count; i++) {
         target[i] = target_of(sweep, from + i);
         any = any || target[i] > reached[i];
-        piece.lo[i] = reached[i];
-        piece.hi[i] = target[i];
+        use[i] = target[i] > reached[i] ? 1.0 : 0.0;
         at[i] = cells ? 0.5 * (reached[i] + target[i]) : target[i];
     }
     if (!any)
         return;
     evaluate_at(sweep, from, count, at, part);
-    piece.upper = reached;
-    piece.lower = target;
+    piece.use = use;
+    piece.lo = piece.upper = reached;
+    piece.hi = piece.lower = target;
     for (size_t p = 0; p < STERICOL_PARTS; p++) {
         piece.upper_part[p] = cells ? part[p] : stericol_last_part(sweep, p) + from;
         piece.lower_part[p] = part[p];

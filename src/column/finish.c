@@ -185,12 +185,23 @@ static void finish_column(stericol_sweep *sweep, size_t column, ending *end)
         write_missing(sweep, column, plane);
 }
 
+/* A column of samples reaches its last sample, or the sea floor above that; for cells it is known. */
+static void find_reached(stericol_sweep *sweep, size_t from, size_t count)
+{
+    const double *place = stericol_place(sweep);
+    for (size_t i = from; i < from + count && sweep->options.vertical != STERICOL_VERTICAL_CELLS; i++) {
+        const double floor = stericol_floor_of(sweep, i);
+        sweep->reached[i] = place[i] < floor ? place[i] : floor;
+    }
+}
+
 stericol_status stericol_sweep_finish(stericol_sweep *sweep, size_t from, size_t to)
 {
     assert(from <= to && to <= sweep->count);
     while (from < to) {
         const size_t count = stericol_strip_length(sweep, from, to);
         ending end;
+        find_reached(sweep, from, count);
         stericol_carry_down(sweep, from, count);
         for (size_t column = from; column < from + count; column++) {
             if (sweep->samples != NULL) {

@@ -29,12 +29,8 @@ static void volume_at(const stericol_sweep *sweep, const stericol_points *points
 
 static void evaluate_mid_state(const stericol_sweep *sweep, const stericol_points *points, differences *d)
 {
-    const double *s1 = points->salinity[0], *s2 = points->salinity[1];
-    const double *t1 = points->temperature[0], *t2 = points->temperature[1];
-    for (size_t i = 0; i < points->count; i++) {
-        d->mid_salinity[i] = 0.5 * (s1[i] + s2[i]);
-        d->mid_temperature[i] = 0.5 * (t1[i] + t2[i]);
-    }
+    sweep->loops->average(points->count, points->salinity[0], points->salinity[1], d->mid_salinity);
+    sweep->loops->average(points->count, points->temperature[0], points->temperature[1], d->mid_temperature);
     if (points->pressures != NULL)
         stericol_volume_points_derivatives(&sweep->water, points->pressures, points->count, d->mid_salinity,
                                            d->mid_temperature, d->mid_volume, d->by_temperature,
@@ -58,10 +54,8 @@ static void attribute_by_states(const stericol_sweep *sweep, const stericol_poin
         }
         return;
     }
-    for (size_t i = 0; i < points->count; i++) {
-        d->thermosteric[i] = 0.5 * ((warmed[i] - v1[i]) + (v2[i] - salted[i]));
-        d->halosteric[i] = 0.5 * ((salted[i] - v1[i]) + (v2[i] - warmed[i]));
-    }
+    sweep->loops->mean_difference(points->count, warmed, v1, v2, salted, d->thermosteric);
+    sweep->loops->mean_difference(points->count, salted, v1, v2, warmed, d->halosteric);
 }
 
 /* Expansion and contraction at the mid state; fractions, so they are put on the mean volume of both epochs.
@@ -111,36 +105,37 @@ static void find_weights(const stericol_sweep *sweep, const stericol_points *poi
     if (points->scale != NULL)
         memcpy(mass, points->scale, points->count * sizeof *mass);
     else
-        for (size_t i = 0; i < points->count; i++)
-            mass[i] = 1.0 / (0.5 * (v1[i] + v2[i]));
-    memcpy(height, mass, points->count * sizeof *height);
-    if (density > 0.0)
-        for (size_t i = 0; i < points->count; i++)
-            height[i] = mass[i] * (0.5 * (v1[i] + v2[i])) / (density * v1[i] * v2[i]);
+        sweep->loops->inverse_average(points->count, v1, v2, mass);
+    for (size_t i = 0; density > 0.0 && i < points->count; i++)
+        height[i] = mass[i] * (0.5 * (v1[i] + v2[i])) / (density * v1[i] * v2[i]);
 }
 
 void stericol_integrands(const stericol_sweep *sweep, const stericol_points *points,
                          double part[STERICOL_PARTS][STERICOL_STRIP])
 {
     differences d;
-    double mass[STERICOL_STRIP], height[STERICOL_STRIP];
+    double mass[STERICOL_STRIP], height[STERICOL_STRIP], capacity[STERICOL_STRIP];
+    double *parts[STERICOL_PARTS];
+    for (size_t p = 0; p < STERICOL_PARTS; p++)
+        parts[p] = part[p];
     find_differences(sweep, points, &d);
     find_weights(sweep, points, &d, mass, height);
-    const double *t1 = points->temperature[0], *t2 = points->temperature[1];
-    for (size_t i = 0; i < points->count; i++) {
-        part[STERICOL_PART_TOTAL][i] = (d.volume[1][i] - d.volume[0][i]) * height[i];
-        part[STERICOL_PART_THERMOSTERIC][i] = d.thermosteric[i] * height[i];
-        part[STERICOL_PART_HALOSTERIC][i] = d.halosteric[i] * height[i];
-        part[STERICOL_PART_HEAT][i] = STERICOL_HEAT_CAPACITY * (t2[i] - t1[i]) * mass[i];
-        part[STERICOL_PART_EXPANSION][i] = d.by_temperature[i] / d.mid_volume[i];
+    stericol_part_sources sources = {
+        .volume = {d.volume[0], d.volume[1]},
+        .thermosteric = d.thermosteric,
+        .halosteric = d.halosteric,
+        .temperature = {points->temperature[0], points->temperature[1]},
+        .by_temperature = d.by_temperature,
+        .mid_volume = d.mid_volume,
+        .mass = mass,
+        .height = sweep->options.reference_density > 0.0 ? height : mass,
+    };
+    if (sweep->water.equation == STERICOL_EQUATION_EOS80) {
+        /* Heat capacity at the surface belongs to potential temperature; UNESCO 44 (1983), section 5. */
+        stericol_eos80_heat_capacity_row(0.0, points->count, d.mid_salinity, d.mid_temperature, capacity);
+        sources.capacity = capacity;
     }
-    if (sweep->water.equation != STERICOL_EQUATION_EOS80)
-        return;
-    /* Heat capacity at the surface belongs to potential temperature; UNESCO 44 (1983), section 5. */
-    double capacity[STERICOL_STRIP];
-    stericol_eos80_heat_capacity_row(0.0, points->count, d.mid_salinity, d.mid_temperature, capacity);
-    for (size_t i = 0; i < points->count; i++)
-        part[STERICOL_PART_HEAT][i] = capacity[i] * (t2[i] - t1[i]) * mass[i];
+    sweep->loops->find_parts(points->count, &sources, parts);
 }
 
 const double *stericol_strip_scale(const stericol_sweep *sweep, size_t from, size_t count,

@@ -11,27 +11,28 @@
 
 typedef struct strip {
     stericol_sweep *sweep;
+    const stericol_loops *loops;
     const stericol_sweep_level_record *record;
     size_t from;
     size_t count;
     bool cells;
-    const double *scale;
     double scales[STERICOL_STRIP];
     double position[STERICOL_STRIP]; /* coordinate of the sample */
     double upper[STERICOL_STRIP];    /* limits of the cell; cells only */
     double lower[STERICOL_STRIP];
-    double floor[STERICOL_STRIP];
     double part[STERICOL_PARTS][STERICOL_STRIP];
     double surface[STERICOL_PARTS][STERICOL_STRIP]; /* the same water at the surface */
     stericol_points points;
     double pressures[STERICOL_STRIP];
-    unsigned char valid[2][STERICOL_STRIP]; /* each epoch alone */
-    unsigned char rejected[STERICOL_STRIP];
-    double use[STERICOL_STRIP];          /* 1 where the level counts, else 0 */
-    unsigned char start[STERICOL_STRIP]; /* the column starts here */
-    unsigned char carry[STERICOL_STRIP]; /* ... and is carried up to the surface */
-    size_t used;
-    size_t starting;
+    /* 0 or NaN: each epoch has values in its own right; what was evaluated is finite. */
+    double earlier[STERICOL_STRIP];
+    double later[STERICOL_STRIP];
+    double unsound[STERICOL_STRIP];
+    double use[STERICOL_STRIP]; /* 1 where the level counts, else 0 */
+    bool any_used;
+    size_t starting; /* columns that start here, and their numbers in the strip */
+    unsigned short start[STERICOL_STRIP];
+    double carry[STERICOL_STRIP]; /* 1 where one of them is carried up to the surface; set when any is */
     size_t carried;
 } strip;
 
@@ -58,7 +59,6 @@ static void find_places(strip *s)
     } else {
         spread(s->position, record->positions, record->position, s->from, s->count);
     }
-    spread(s->floor, s->sweep->floor, (double)INFINITY, s->from, s->count);
 }
 
 static bool has_own_places(const strip *s)
@@ -67,33 +67,10 @@ static bool has_own_places(const strip *s)
     return s->cells ? record->uppers != NULL || record->lowers != NULL : record->positions != NULL;
 }
 
-/* Which epochs have both values, and where one was rejected.  True when any column has both epochs. */
-static bool find_valid(strip *s)
-{
-    unsigned any = 0;
-    for (int epoch = 0; epoch < 2; epoch++) {
-        const double *salinity = s->points.salinity[epoch];
-        const double *temperature = s->points.temperature[epoch];
-        for (size_t i = 0; i < s->count; i++)
-            s->valid[epoch][i] =
-                (unsigned char)((fabs(salinity[i]) <= DBL_MAX) & (fabs(temperature[i]) <= DBL_MAX) &
-                                (fabs(s->position[i]) <= DBL_MAX));
-        for (size_t i = 0; i < s->count; i++) {
-            const unsigned char wild =
-                (unsigned char)((fabs(salinity[i]) > DBL_MAX) | (fabs(temperature[i]) > DBL_MAX));
-            s->rejected[i] = epoch == 0 ? wild : (unsigned char)(s->rejected[i] | wild);
-        }
-    }
-    for (size_t i = 0; i < s->count; i++)
-        any |= (unsigned)(s->valid[0][i] & s->valid[1][i]);
-    return any != 0;
-}
-
 static void point_at_states(strip *s)
 {
     const stericol_sweep_level_record *record = s->record;
     s->points.count = s->count;
-    s->points.scale = s->scale;
     for (int epoch = 0; epoch < 2; epoch++) {
         s->points.salinity[epoch] = record->salinity[epoch] + s->from;
         s->points.temperature[epoch] = record->temperature[epoch] + s->from;
@@ -103,23 +80,6 @@ static void point_at_states(strip *s)
     if (record->averaged_volume[0] != NULL) {
         s->points.averaged_thermosteric = record->averaged_thermosteric + s->from;
         s->points.averaged_halosteric = record->averaged_halosteric + s->from;
-    }
-}
-
-/* What cannot be evaluated (an averaged volume that is missing, salinity below an equation's range) counts as
- * missing. */
-static void drop_unsound(strip *s)
-{
-    for (size_t i = 0; i < s->count; i++) {
-        double worst = 0.0;
-        for (size_t p = 0; p < STERICOL_PARTS; p++)
-            worst += fabs(s->part[p][i]);
-        const unsigned char sound = (unsigned char)(worst <= DBL_MAX);
-        const unsigned char both = (unsigned char)(s->valid[0][i] & s->valid[1][i]);
-        if (s->points.averaged_volume[0] == NULL)
-            s->rejected[i] = (unsigned char)(s->rejected[i] | (both & (sound ^ 1u)));
-        s->valid[0][i] = (unsigned char)(s->valid[0][i] & (sound | (both ^ 1u)));
-        s->valid[1][i] = (unsigned char)(s->valid[1][i] & (sound | (both ^ 1u)));
     }
 }
 
@@ -142,35 +102,52 @@ static double surface_reach(const stericol_sweep *sweep, size_t column)
     return sweep->reach == NULL ? sweep->options.surface_reach : sweep->reach[stericol_row_of(sweep, column)];
 }
 
-/* Decides on one column; `both`: both epochs have values here.  Returns whether the level counts. */
-static bool judge_column(strip *s, size_t i, bool both)
+/* Whether something of the level was rejected: a value outside physical limits, or states that the equation
+   of state cannot take.  An averaged volume that is not there is missing, not rejected. */
+static bool was_rejected(const strip *s, size_t i, bool unsound)
+{
+    if (unsound && s->points.averaged_volume[0] == NULL)
+        return true;
+    for (int epoch = 0; epoch < 2; epoch++)
+        if (fabs(s->points.salinity[epoch][i]) > DBL_MAX || fabs(s->points.temperature[epoch][i]) > DBL_MAX)
+            return true;
+    return false;
+}
+
+static void start_column(strip *s, size_t i)
+{
+    const double above = s->cells ? s->upper[i] : s->position[i];
+    if (s->starting == 0)
+        memset(s->carry, 0, sizeof s->carry);
+    s->start[s->starting++] = (unsigned short)i;
+    if (above > 0.0 && s->position[i] <= surface_reach(s->sweep, s->from + i)) {
+        s->carry[i] = 1.0;
+        s->carried++;
+    }
+}
+
+/* Decides on one column; `both`: both epochs have values here.  Sets the phase; returns whether the level
+ * counts. */
+static bool judge_column(strip *s, size_t i, bool both, bool unsound)
 {
     stericol_sweep *sweep = s->sweep;
     const size_t column = s->from + i;
     unsigned phase = sweep->phase[column];
     if ((phase & STERICOL_PHASE_STARTED) == 0) {
-        if (!both || !(s->floor[i] > 0.0))
+        if (!both || !(stericol_floor_of(sweep, column) > 0.0))
             return false;
         phase |= STERICOL_PHASE_STARTED;
-        s->start[i] = 1;
-        s->starting++;
-        const double above = s->cells ? s->upper[i] : s->position[i];
-        if (above > 0.0 && s->position[i] <= surface_reach(sweep, column)) {
-            s->carry[i] = 1;
-            s->carried++;
-        }
-        if (s->record->averaged_volume[0] != NULL)
+        if (s->points.averaged_volume[0] != NULL)
             phase |= STERICOL_PHASE_AVERAGED;
+        start_column(s, i);
     } else {
-        const double place = stericol_place(sweep)[column];
-        both = both && s->position[i] > place;
         if (both && (sweep->options.cast || (phase & STERICOL_PHASE_HOLE) != 0) &&
-            !can_bridge(sweep, column, place, s->position[i])) {
+            !can_bridge(sweep, column, stericol_place(sweep)[column], s->position[i])) {
             sweep->phase[column] = (uint16_t)(phase | STERICOL_PHASE_GAP);
             return false;
         }
         if (!both) {
-            if ((phase & STERICOL_PHASE_HOLE) == 0 && s->rejected[i] != 0)
+            if ((phase & STERICOL_PHASE_HOLE) == 0 && was_rejected(s, i, unsound))
                 phase |= STERICOL_PHASE_REJECTED;
             sweep->phase[column] = (uint16_t)(phase | STERICOL_PHASE_HOLE);
             return false;
@@ -183,29 +160,65 @@ static bool judge_column(strip *s, size_t i, bool both)
     return true;
 }
 
-/* Settles for every column of the strip whether the level counts, and how it stands with the column's end. */
+/* Handles a column for which something changes. */
+static void judge_event(strip *s, size_t i)
+{
+    uint16_t *phase = &s->sweep->phase[s->from + i];
+    bool earlier = s->earlier[i] <= 0.0, later = s->later[i] <= 0.0, unsound = false;
+    if (earlier && later && !(s->unsound[i] <= 0.0)) {
+        unsound = true;
+        earlier = later = false;
+    }
+    if (earlier || later) {
+        *phase =
+            (uint16_t)(*phase & ~(unsigned)(STERICOL_PHASE_EARLIER_DEEPER | STERICOL_PHASE_LATER_DEEPER));
+        if (earlier != later)
+            *phase =
+                (uint16_t)(*phase | (earlier ? STERICOL_PHASE_EARLIER_DEEPER : STERICOL_PHASE_LATER_DEEPER));
+    }
+    s->use[i] = 0.0;
+    if ((*phase & (STERICOL_PHASE_GAP | STERICOL_PHASE_FLOOR)) == 0 &&
+        judge_column(s, i, earlier && later, unsound)) {
+        s->use[i] = 1.0;
+        s->any_used = true;
+    }
+}
+
+/* `value` is 0 or NaN; a comparison of bits costs less than one of numbers and cannot be guessed wrong. */
+static unsigned is_zero(double value)
+{
+    uint64_t bits;
+    memcpy(&bits, &value, sizeof bits);
+    return bits == 0;
+}
+
+/*
+ * Settles for every column whether the level counts.  In nearly all nothing changes: a column that is under
+ * way has one more sample, or land and what lies below an end has one more level without any.  Only the
+ * others are looked at one by one.
+ */
 static void judge(strip *s)
 {
-    uint16_t *phases = s->sweep->phase + s->from;
-    memset(s->start, 0, sizeof s->start);
-    memset(s->carry, 0, sizeof s->carry);
+    const uint16_t *phases = s->sweep->phase + s->from;
+    const unsigned below_end = STERICOL_PHASE_GAP | STERICOL_PHASE_FLOOR | STERICOL_PHASE_HOLE;
+    const unsigned always = s->sweep->options.cast || s->record->last ? 1 : 0;
+    unsigned short event[STERICOL_STRIP];
+    size_t events = 0, quietly_used = 0;
     for (size_t i = 0; i < s->count; i++) {
-        const bool earlier = s->valid[0][i] != 0, later = s->valid[1][i] != 0;
-        s->use[i] = 0.0;
-        if (earlier || later) {
-            unsigned phase =
-                phases[i] & ~(unsigned)(STERICOL_PHASE_EARLIER_DEEPER | STERICOL_PHASE_LATER_DEEPER);
-            if (earlier != later)
-                phase |= earlier ? STERICOL_PHASE_EARLIER_DEEPER : STERICOL_PHASE_LATER_DEEPER;
-            phases[i] = (uint16_t)phase;
-        }
-        if ((phases[i] & (STERICOL_PHASE_GAP | STERICOL_PHASE_FLOOR)) != 0)
-            continue;
-        if (judge_column(s, i, earlier && later)) {
-            s->use[i] = 1.0;
-            s->used++;
-        }
+        const unsigned phase = phases[i];
+        const unsigned one = is_zero(s->earlier[i]), two = is_zero(s->later[i]),
+                       sound = is_zero(s->unsound[i]);
+        const unsigned goes_on = one & two & sound & (always ^ 1u) &
+                                 ((phase & ~(unsigned)STERICOL_PHASE_AVERAGED) == STERICOL_PHASE_STARTED);
+        const unsigned stays_out =
+            ((one | two) ^ 1u) & (((phase & STERICOL_PHASE_STARTED) == 0) | ((phase & below_end) != 0));
+        event[events] = (unsigned short)i;
+        events += (goes_on | stays_out) ^ 1u;
+        quietly_used += goes_on;
     }
+    s->any_used = quietly_used > 0;
+    for (size_t k = 0; k < events; k++)
+        judge_event(s, event[k]);
 }
 
 /* The starting columns' water at the surface (cells: in the middle between the surface and the first cell).
@@ -230,81 +243,84 @@ static void find_surface(strip *s)
     stericol_integrands(s->sweep, &points, s->surface);
 }
 
-static double lesser(double a, double b)
+/* The piece ends at the sea floor where that is known: `cut` or, without one, `end` itself. */
+static const double *cut_at_floor(const strip *s, const double *end, double *cut)
 {
-    return a < b ? a : b;
+    if (s->sweep->floor == NULL)
+        return end;
+    const double *floor = s->sweep->floor + s->from;
+    for (size_t i = 0; i < s->count; i++)
+        cut[i] = end[i] < floor[i] ? end[i] : floor[i];
+    return cut;
 }
 
 /* Samples: the integrand is linear from the last sample, or from the surface, to this one. */
 static void add_link(strip *s)
 {
     stericol_sweep *sweep = s->sweep;
-    const double *place = stericol_place(sweep) + s->from;
-    double above[STERICOL_STRIP], part[STERICOL_PARTS][STERICOL_STRIP];
-    stericol_piece piece;
-    for (size_t i = 0; i < s->count; i++) {
-        const double first = s->carry[i] != 0 ? 0.0 : s->position[i];
-        above[i] = s->start[i] != 0 ? first : place[i];
-        piece.lo[i] = s->use[i] > 0.0 ? above[i] : 0.0;
-        piece.hi[i] = s->use[i] > 0.0 ? lesser(s->position[i], s->floor[i]) : 0.0;
-    }
-    piece.upper = above;
-    piece.lower = s->position;
+    double above[STERICOL_STRIP], cut[STERICOL_STRIP], part[STERICOL_PARTS][STERICOL_STRIP];
+    stericol_piece piece = {.use = s->use, .lower = s->position};
+    piece.lo = piece.upper = stericol_place(sweep) + s->from;
+    piece.hi = cut_at_floor(s, s->position, cut);
     for (size_t p = 0; p < STERICOL_PARTS; p++) {
-        const double *last = stericol_last_part(sweep, p) + s->from;
-        for (size_t i = 0; s->carried > 0 && i < s->count; i++)
-            part[p][i] = s->carry[i] != 0 ? s->surface[p][i] : last[i];
-        piece.upper_part[p] = s->carried > 0 ? part[p] : last;
+        piece.upper_part[p] = stericol_last_part(sweep, p) + s->from;
+        piece.lower_part[p] = s->part[p];
+    }
+    if (s->starting > 0) {
+        memcpy(above, piece.upper, s->count * sizeof *above);
+        for (size_t k = 0; k < s->starting; k++)
+            above[s->start[k]] = s->carry[s->start[k]] > 0.0 ? 0.0 : s->position[s->start[k]];
+        piece.lo = piece.upper = above;
+    }
+    for (size_t p = 0; s->carried > 0 && p < STERICOL_PARTS; p++) {
+        memcpy(part[p], piece.upper_part[p], s->count * sizeof part[p][0]);
+        s->loops->replace(s->count, s->carry, s->surface[p], part[p]);
+        piece.upper_part[p] = part[p];
+    }
+    stericol_add_piece(sweep, s->from, s->count, &piece);
+}
+
+/* Where a constant integrand stands does not matter: both ends of the piece are the same. */
+static void add_constant(strip *s, const double *use, const double *lo, const double *hi,
+                         double part[STERICOL_PARTS][STERICOL_STRIP])
+{
+    stericol_piece piece = {.use = use, .lo = lo, .hi = hi, .upper = s->position, .lower = s->position};
+    for (size_t p = 0; p < STERICOL_PARTS; p++)
+        piece.upper_part[p] = piece.lower_part[p] = part[p];
+    stericol_add_piece(s->sweep, s->from, s->count, &piece);
+}
+
+/* Cells: what is missing between the last cell and this one is linear between their middles. */
+static void bridge(strip *s, const double *reached)
+{
+    stericol_sweep *sweep = s->sweep;
+    double cut[STERICOL_STRIP];
+    stericol_piece piece = {.use = s->use, .lo = reached, .lower = s->position};
+    piece.upper = stericol_place(sweep) + s->from;
+    piece.hi = cut_at_floor(s, s->upper, cut);
+    for (size_t p = 0; p < STERICOL_PARTS; p++) {
+        piece.upper_part[p] = stericol_last_part(sweep, p) + s->from;
         piece.lower_part[p] = s->part[p];
     }
     stericol_add_piece(sweep, s->from, s->count, &piece);
 }
 
-/* Where a constant integrand stands does not matter: both ends of `piece` are the same. */
-static void add_constant(strip *s, stericol_piece *piece, double part[STERICOL_PARTS][STERICOL_STRIP])
-{
-    piece->upper = piece->lower = s->position;
-    for (size_t p = 0; p < STERICOL_PARTS; p++)
-        piece->upper_part[p] = piece->lower_part[p] = part[p];
-    stericol_add_piece(s->sweep, s->from, s->count, piece);
-}
-
 /* Cells: what is missing above the cell, then the cell. */
 static void add_cells(strip *s)
 {
-    stericol_sweep *sweep = s->sweep;
-    const double *reached = sweep->reached + s->from;
-    stericol_piece piece;
-    bool bridging = false;
+    double reached[STERICOL_STRIP], top[STERICOL_STRIP], cut[STERICOL_STRIP];
     if (s->carried > 0) {
-        for (size_t i = 0; i < s->count; i++) {
-            piece.lo[i] = 0.0;
-            piece.hi[i] = s->carry[i] != 0 ? lesser(s->upper[i], s->floor[i]) : 0.0;
-        }
-        add_constant(s, &piece, s->surface);
+        static const double surface[STERICOL_STRIP] = {0};
+        add_constant(s, s->carry, surface, cut_at_floor(s, s->upper, cut), s->surface);
     }
-    for (size_t i = 0; i < s->count; i++) {
-        const bool bridge = s->use[i] > 0.0 && s->start[i] == 0 && s->upper[i] > reached[i];
-        bridging = bridging || bridge;
-        piece.lo[i] = bridge ? reached[i] : 0.0;
-        piece.hi[i] = bridge ? lesser(s->upper[i], s->floor[i]) : 0.0;
-    }
-    if (bridging) {
-        piece.upper = stericol_place(sweep) + s->from;
-        piece.lower = s->position;
-        for (size_t p = 0; p < STERICOL_PARTS; p++) {
-            piece.upper_part[p] = stericol_last_part(sweep, p) + s->from;
-            piece.lower_part[p] = s->part[p];
-        }
-        stericol_add_piece(sweep, s->from, s->count, &piece);
-    }
-    for (size_t i = 0; i < s->count; i++) {
-        /* Limits in files are rounded: what two cells both claim belongs to the upper one. */
-        const bool overlap = s->start[i] == 0 && reached[i] > s->upper[i];
-        piece.lo[i] = s->use[i] > 0.0 ? (overlap ? reached[i] : s->upper[i]) : 0.0;
-        piece.hi[i] = s->use[i] > 0.0 ? lesser(s->lower[i], s->floor[i]) : 0.0;
-    }
-    add_constant(s, &piece, s->part);
+    memcpy(reached, s->sweep->reached + s->from, s->count * sizeof *reached);
+    for (size_t k = 0; k < s->starting; k++)
+        reached[s->start[k]] = s->upper[s->start[k]];
+    bridge(s, reached);
+    /* Limits in files are rounded: what two cells both claim belongs to the upper one. */
+    for (size_t i = 0; i < s->count; i++)
+        top[i] = s->upper[i] > reached[i] ? s->upper[i] : reached[i];
+    add_constant(s, s->use, top, cut_at_floor(s, s->lower, cut), s->part);
 }
 
 /* Keeps the samples of a column for the splines. */
@@ -328,55 +344,63 @@ static void keep_samples(strip *s)
     }
 }
 
-static void choose(double *target, const double *use, const double *values, size_t count)
+/* Columns that have come to the sea floor are done. */
+static void end_at_floor(strip *s, const double *end)
 {
-#pragma omp simd
-    for (size_t i = 0; i < count; i++)
-        target[i] = use[i] > 0.0 ? values[i] : target[i];
+    const double *floor = s->sweep->floor + s->from;
+    uint16_t *phase = s->sweep->phase + s->from;
+    for (size_t i = 0; i < s->count; i++)
+        phase[i] = (uint16_t)(phase[i] | (s->use[i] > 0.0 && end[i] >= floor[i] ? STERICOL_PHASE_FLOOR : 0));
 }
 
 /* What the next level needs. */
 static void remember(strip *s)
 {
     stericol_sweep *sweep = s->sweep;
+    const stericol_loops *loops = s->loops;
     double *top = stericol_top(sweep) + s->from;
-    const double *end = s->cells ? s->lower : s->position;
     for (size_t p = 0; p < STERICOL_PARTS; p++)
-        choose(stericol_last_part(sweep, p) + s->from, s->use, s->part[p], s->count);
-    choose(stericol_place(sweep) + s->from, s->use, s->position, s->count);
+        loops->replace(s->count, s->use, s->part[p], stericol_last_part(sweep, p) + s->from);
+    loops->replace(s->count, s->use, s->position, stericol_place(sweep) + s->from);
     for (size_t epoch = 0; sweep->sizes.carries && epoch < 2; epoch++) {
-        choose(stericol_last_state(sweep, epoch) + s->from, s->use, s->points.salinity[epoch], s->count);
-        choose(stericol_last_state(sweep, 2 + epoch) + s->from, s->use, s->points.temperature[epoch],
-               s->count);
+        loops->replace(s->count, s->use, s->points.salinity[epoch],
+                       stericol_last_state(sweep, epoch) + s->from);
+        loops->replace(s->count, s->use, s->points.temperature[epoch],
+                       stericol_last_state(sweep, 2 + epoch) + s->from);
     }
     if (sweep->samples != NULL)
         keep_samples(s);
-    for (size_t i = 0; s->starting > 0 && i < s->count; i++)
-        if (s->start[i] != 0)
-            top[i] = s->carry[i] != 0 ? 0.0 : s->cells ? s->upper[i] : s->position[i];
-    double *reached = sweep->reached + s->from;
-    uint16_t *phase = sweep->phase + s->from;
-    for (size_t i = 0; i < s->count; i++) {
-        const bool used = s->use[i] > 0.0, at_floor = end[i] >= s->floor[i];
-        const double down_to = at_floor ? s->floor[i] : end[i];
-        reached[i] = used && (s->start[i] != 0 || down_to > reached[i]) ? down_to : reached[i];
-        phase[i] = (uint16_t)(phase[i] | (used && at_floor ? STERICOL_PHASE_FLOOR : 0));
+    for (size_t k = 0; k < s->starting; k++) {
+        const size_t i = s->start[k];
+        top[i] = s->carry[i] > 0.0 ? 0.0 : s->cells ? s->upper[i] : s->position[i];
     }
+    if (s->cells) {
+        double cut[STERICOL_STRIP];
+        loops->replace(s->count, s->use, cut_at_floor(s, s->lower, cut), sweep->reached + s->from);
+    }
+    if (sweep->floor != NULL)
+        end_at_floor(s, s->cells ? s->lower : s->position);
 }
 
 static void add_strip(strip *s)
 {
+    const double *parts[STERICOL_PARTS];
+    for (size_t p = 0; p < STERICOL_PARTS; p++)
+        parts[p] = s->part[p];
     point_at_states(s);
     find_places(s);
-    s->scale = s->points.scale = stericol_strip_scale(s->sweep, s->from, s->count, s->scales);
-    if (find_valid(s)) {
+    s->points.scale = stericol_strip_scale(s->sweep, s->from, s->count, s->scales);
+    if (s->loops->find_valid(s->count, s->points.salinity, s->points.temperature, s->position,
+                             stericol_place(s->sweep) + s->from, s->earlier, s->later) > 0.0) {
         stericol_strip_pressures(s->sweep, s->from, s->position[0], has_own_places(s) ? s->position : NULL,
                                  &s->points, s->pressures);
         stericol_integrands(s->sweep, &s->points, s->part);
-        drop_unsound(s);
+        s->loops->find_use(s->count, parts, s->earlier, s->later, s->unsound, s->use);
+    } else {
+        memset(s->unsound, 0, sizeof s->unsound);
     }
     judge(s);
-    if (s->used == 0)
+    if (!s->any_used)
         return;
     if (s->carried > 0)
         find_surface(s);
@@ -400,12 +424,14 @@ void stericol_sweep_level(stericol_sweep *sweep, const stericol_sweep_level_reco
     while (from < to) {
         strip s;
         s.sweep = sweep;
+        s.loops = sweep->loops;
         s.record = record;
         s.from = from;
         s.count = stericol_strip_length(sweep, from, to);
         s.cells = sweep->options.vertical == STERICOL_VERTICAL_CELLS;
         s.points = (stericol_points){0};
-        s.used = s.starting = s.carried = 0;
+        s.any_used = false;
+        s.starting = s.carried = 0;
         add_strip(&s);
         from += s.count;
     }

@@ -2,13 +2,6 @@
 /* The one place where sums grow. */
 #include "column/sweep.h"
 
-/* The part of a piece that lies in a segment, in each column: its width, and its middle as a share of the way
-   from `upper` to `lower`. */
-typedef struct cut {
-    double width[STERICOL_STRIP];
-    double share[STERICOL_STRIP];
-} cut;
-
 /* Limits of a segment for each column of the strip. */
 static const double *limits_of(const stericol_sweep *sweep, size_t limit, size_t from, size_t count,
                                double buffer[STERICOL_STRIP])
@@ -21,62 +14,24 @@ static const double *limits_of(const stericol_sweep *sweep, size_t limit, size_t
     return buffer;
 }
 
-/* False when the segment holds nothing of the piece in any column. */
-static bool cut_piece(const stericol_piece *piece, size_t count, const double *above, const double *below,
-                      cut *c)
-{
-    double widest = 0.0;
-#pragma omp simd reduction(max : widest)
-    for (size_t i = 0; i < count; i++) {
-        const double lo = piece->lo[i] > above[i] ? piece->lo[i] : above[i];
-        const double hi = piece->hi[i] < below[i] ? piece->hi[i] : below[i];
-        const double width = hi > lo ? hi - lo : 0.0;
-        const double span = piece->lower[i] - piece->upper[i];
-        const double share = (0.5 * (lo + hi) - piece->upper[i]) / span;
-        c->width[i] = width;
-        c->share[i] = span > 0.0 ? share : 0.0;
-        widest = width > widest ? width : widest;
-    }
-    return widest > 0.0;
-}
-
-/* Middle times width is the exact integral of what is linear.  Columns that take no part may hold NaN: a
-   select keeps it out, a product with zero would not. */
-static void add_part(const cut *c, size_t count, const double *upper, const double *lower, double *sum)
-{
-#pragma omp simd
-    for (size_t i = 0; i < count; i++) {
-        const double middle = upper[i] + c->share[i] * (lower[i] - upper[i]);
-        const double term = c->width[i] * middle;
-        sum[i] += c->width[i] > 0.0 ? term : 0.0;
-    }
-}
-
-/* The absolute value is taken at the samples and is linear between them, as everything else. */
-static void add_turnover(const cut *c, size_t count, const double *upper, const double *lower, double *sum)
-{
-#pragma omp simd
-    for (size_t i = 0; i < count; i++) {
-        const double first = fabs(upper[i]);
-        const double middle = first + c->share[i] * (fabs(lower[i]) - first);
-        const double term = c->width[i] * middle;
-        sum[i] += c->width[i] > 0.0 ? term : 0.0;
-    }
-}
-
 void stericol_add_piece(stericol_sweep *sweep, size_t from, size_t count, const stericol_piece *piece)
 {
-    double above[STERICOL_STRIP], below[STERICOL_STRIP];
-    cut c;
-    for (size_t k = 0; k < sweep->cuts.segment_count; k++) {
+    const stericol_loops *loops = sweep->loops;
+    double above[STERICOL_STRIP], below[STERICOL_STRIP], width[STERICOL_STRIP], share[STERICOL_STRIP];
+    double *sum[STERICOL_SUMS], lowest, highest;
+    const bool own_limits = sweep->limits != NULL && sweep->row_length == 1;
+    const size_t row = stericol_row_of(sweep, from);
+    loops->find_extent(count, piece, &lowest, &highest);
+    for (size_t k = 0; k < sweep->cuts.segment_count && lowest < highest; k++) {
         const stericol_segment *segment = &sweep->cuts.segment[k];
-        if (!cut_piece(piece, count, limits_of(sweep, segment->upper, from, count, above),
-                       limits_of(sweep, segment->lower, from, count, below), &c))
+        /* Nothing of the strip lies in this segment: nothing would be added. */
+        if (!own_limits && (lowest >= stericol_limit_of(sweep, segment->lower, row) ||
+                            highest <= stericol_limit_of(sweep, segment->upper, row)))
             continue;
-        for (size_t p = 0; p < STERICOL_PARTS; p++)
-            add_part(&c, count, piece->upper_part[p], piece->lower_part[p],
-                     stericol_sum_plane(sweep, k, p) + from);
-        add_turnover(&c, count, piece->upper_part[STERICOL_PART_HEAT], piece->lower_part[STERICOL_PART_HEAT],
-                     stericol_sum_plane(sweep, k, STERICOL_SUM_TURNOVER) + from);
+        loops->cut(count, piece, limits_of(sweep, segment->upper, from, count, above),
+                   limits_of(sweep, segment->lower, from, count, below), width, share);
+        for (size_t s = 0; s < STERICOL_SUMS; s++)
+            sum[s] = stericol_sum_plane(sweep, k, s) + from;
+        loops->add(count, piece, width, share, sum);
     }
 }

@@ -66,7 +66,7 @@ size_t stericol_sweep_bytes(const stericol_column_options *options, size_t count
 
 double stericol_metres(const stericol_sweep *sweep, double coordinate, size_t row)
 {
-    if (sweep->scale == NULL || !isfinite(coordinate))
+    if (sweep->scale == NULL || !isfinite(coordinate) || fabs(coordinate) <= 0.0)
         return coordinate;
     return stericol_depth(coordinate, sweep->latitude[row]);
 }
@@ -119,8 +119,11 @@ static bool take_room(stericol_sweep *sweep, bool with_sea_floor)
     return taken;
 }
 
-static void fill_rows(stericol_sweep *sweep, const double *latitude, const double *sea_floor)
+static void fill_arrays(stericol_sweep *sweep, const double *latitude, const double *sea_floor)
 {
+    double *place = stericol_place(sweep);
+    for (size_t i = 0; i < sweep->count; i++)
+        place[i] = -(double)INFINITY;
     memcpy(sweep->latitude, latitude, sweep->rows * sizeof *latitude);
     for (size_t row = 0; sweep->scale != NULL && row < sweep->rows; row++) {
         sweep->scale[row] = STERICOL_PASCALS_PER_DECIBAR / stericol_gravity(latitude[row], 0.0);
@@ -154,6 +157,7 @@ stericol_status stericol_sweep_new(stericol_context *context, const stericol_col
     stericol_sweep *made = stericol_new_array(1, sizeof *made);
     if (made == NULL)
         return stericol_fail_memory(context, sizeof *made, "the sums of the columns");
+    made->loops = stericol_loops_best();
     made->water = *options->water;
     made->options = *options;
     made->options.water = NULL;
@@ -167,7 +171,7 @@ stericol_status stericol_sweep_new(stericol_context *context, const stericol_col
         stericol_sweep_free(made);
         return stericol_fail_memory(context, sizes.bytes, "the sums of the columns");
     }
-    fill_rows(made, latitude, sea_floor);
+    fill_arrays(made, latitude, sea_floor);
     *sweep = made;
     return STERICOL_OK;
 }

@@ -10,6 +10,7 @@
 #ifndef STERICOL_COLUMN_SWEEP_H
 #define STERICOL_COLUMN_SWEEP_H
 
+#include "column/loops.h"
 #include "stericol/column.h"
 #include "stericol/water.h"
 
@@ -23,18 +24,6 @@ enum {
     STERICOL_MOST_LIMITS = 2 * STERICOL_MOST_LAYERS + 1, /* and the reach of the surface */
     STERICOL_MOST_SEGMENTS = 2 * STERICOL_MOST_LAYERS - 1
 };
-
-/* What is integrated over the coordinate. */
-enum {
-    STERICOL_PART_TOTAL,
-    STERICOL_PART_THERMOSTERIC,
-    STERICOL_PART_HALOSTERIC,
-    STERICOL_PART_HEAT,
-    STERICOL_PART_EXPANSION,
-    STERICOL_PARTS
-};
-/* Sums are the integrals of the parts, and of the absolute value of the heat part. */
-enum { STERICOL_SUM_TURNOVER = STERICOL_PARTS, STERICOL_SUMS };
 
 /* What is remembered of a column from level to level; bits of `phase`. */
 enum {
@@ -83,6 +72,7 @@ typedef struct stericol_sizes {
 } stericol_sizes;
 
 struct stericol_sweep {
+    const stericol_loops *loops;
     stericol_water water;
     stericol_column_options options; /* its pointers are not used */
     stericol_cuts cuts;
@@ -95,7 +85,8 @@ struct stericol_sweep {
     double *limits;   /* [limit][rows], dbar; pressure coordinate only */
     double *reach;    /* [rows], the surface reach in dbar; pressure coordinate only */
     double *planes;   /* [plane][count]; the results take the place of the state when a column is finished */
-    double *reached;  /* [count], coordinate down to which was integrated; then the deepest depth used, m */
+    double *reached;  /* [count], coordinate down to which was integrated (samples: known when finished);
+                             in the end the deepest depth used, m */
     double *floor;    /* [count], coordinate, INFINITY where unknown; NULL when not given */
     uint16_t *phase;  /* [count] */
     signed char *flags;    /* [count] */
@@ -119,7 +110,7 @@ static inline double *stericol_last_part(const stericol_sweep *sweep, size_t par
 {
     return stericol_plane(sweep, sweep->cuts.segment_count * STERICOL_SUMS + part);
 }
-/* Coordinate of the last sample (cells: middle of the last cell). */
+/* Coordinate of the last sample (cells: middle of the last cell); -INFINITY before the first. */
 static inline double *stericol_place(const stericol_sweep *sweep)
 {
     return stericol_last_part(sweep, STERICOL_PARTS);
@@ -191,17 +182,6 @@ const double *stericol_strip_scale(const stericol_sweep *sweep, size_t from, siz
 void stericol_strip_pressures(const stericol_sweep *sweep, size_t from, double coordinate,
                               const double *coordinates, stericol_points *points,
                               double buffer[STERICOL_STRIP]);
-
-/* A piece of coordinate in each column of a strip: lo..hi (nothing where hi <= lo) of the integrand that is
-   linear through (upper, upper_part) and (lower, lower_part). */
-typedef struct stericol_piece {
-    double lo[STERICOL_STRIP];
-    double hi[STERICOL_STRIP];
-    const double *upper;
-    const double *lower;
-    const double *upper_part[STERICOL_PARTS];
-    const double *lower_part[STERICOL_PARTS];
-} stericol_piece;
 
 /* Adds a piece to the sums of the columns from, from + 1, ...; limits of layers cut it exactly. */
 void stericol_add_piece(stericol_sweep *sweep, size_t from, size_t count, const stericol_piece *piece);
