@@ -192,6 +192,21 @@ static const stericol_option files = {
     .help =
         "What to look at: NetCDF files, quoted patterns such as 'sea_*.nc', or @list.txt with a path a line"};
 
+static const stericol_option file_time = {
+    .name = "file-time",
+    .metavar = "FROM..TO",
+    .kind = STERICOL_OPTION_WINDOW,
+    .initial_words = "all times, of which the first alone is looked at closely",
+    .group = input_heading,
+    .help = "Times to look at, averaged as an epoch is, ISO 8601 to any precision, both ends included: "
+            "2005-01..2009-12"};
+static const stericol_option file_step = {
+    .name = "file-step",
+    .metavar = "A..B",
+    .kind = STERICOL_OPTION_STEPS,
+    .group = input_heading,
+    .help = "Times to look at by their number, the first being 1: 3 or 3..5"};
+
 /* ---- reading ---- */
 
 static const stericol_option temperature = {
@@ -486,6 +501,14 @@ static const stericol_option table_of_column = {.name = "table",
                                                 .initial = "text",
                                                 .group = results,
                                                 .help = "How the working appears on standard output"};
+static const stericol_option table_of_inspect = {
+    .name = "table",
+    .metavar = "text|csv|json",
+    .kind = STERICOL_OPTION_CHOICE,
+    .choices = "text|csv|json",
+    .initial = "text",
+    .group = results,
+    .help = "How what was found appears on standard output; csv holds the table of levels alone"};
 static const stericol_option threads = {.name = "threads",
                                         .metavar = "N",
                                         .kind = STERICOL_OPTION_WHOLE,
@@ -620,11 +643,14 @@ static const stericol_example change_examples[] = {
 /* ---- inspect ---- */
 
 static const stericol_option *const inspect_options[] = {
-    &temperature,   &salinity,      &temperature_kind, &salinity_kind, &temperature_scale,
-    &vertical_unit, &select_member, &cell_area,        &thickness,     &mask,
-    &coordinates,   &settings,      &progress,         &quiet,         &log_file};
+    &file_time,         &file_step,        &temperature,   &salinity,  &temperature_kind, &salinity_kind,
+    &temperature_scale, &vertical_unit,    &select_member, &cell_area, &thickness,        &mask,
+    &coordinates,       &table_of_inspect, &memory,        &settings,  &progress,         &quiet,
+    &log_file};
 static const stericol_rule inspect_rules[] = {
-    {STERICOL_RULE_REQUIRED, "file", NULL, NULL, "name the file to look at"}, RUNNING_RULES};
+    {STERICOL_RULE_REQUIRED, "file", NULL, NULL, "name the file to look at"},
+    {STERICOL_RULE_EXCLUDES, "file-time", "file-step", NULL, choose_one},
+    RUNNING_RULES};
 static const stericol_example inspect_examples[] = {
     {"What a file holds and how it would be read", "stericol inspect kolva_1998.nc"},
     {"The same with a choice made",
