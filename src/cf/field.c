@@ -163,8 +163,6 @@ void stericol_cf_field_stride(const stericol_cf_field *field, size_t *levels, si
     }
     if (runs_inside(axes->level, axes->row) || runs_inside(axes->level, axes->column))
         *levels = at_least_one(field->levels);
-    if (runs_inside(axes->row, axes->column))
-        *rows = at_least_one(field->rows);
 }
 
 stericol_status stericol_cf_field_read(stericol_context *context, stericol_cf_field *field, size_t time,

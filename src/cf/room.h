@@ -61,7 +61,7 @@ typedef struct stericol_cf_guard_limits {
 #define STERICOL_CF_GUARD_LIMITS                                                                             \
     (stericol_cf_guard_limits)                                                                               \
     {                                                                                                        \
-        .seconds = 120, .processor_seconds = 60, .memory = (size_t)2 << 30                                   \
+        .seconds = 120, .processor_seconds = 20, .memory = (size_t)2 << 30                                   \
     }
 
 /* Runs in the child; gives a NetCDF status. */

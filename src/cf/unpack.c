@@ -104,15 +104,15 @@ static unsigned long long count_inexact(const stericol_cf_rules *rules, const vo
 
 static unsigned long long drop_huge(double most, double *values, size_t count)
 {
-    long long huge = 0;
+    double huge = 0.0; /* counts are kept in the width of the values: only then do the loops vectorise */
     size_t i;
 
+#pragma omp simd reduction(+ : huge)
     for (i = 0; i < count; i++) {
         const double value = values[i];
-        const long long beyond = fabs(value) > most;
 
-        huge += beyond;
-        values[i] = beyond ? (double)NAN : value;
+        huge += fabs(value) > most ? 1.0 : 0.0;
+        values[i] = fabs(value) > most ? (double)NAN : value;
     }
     return (unsigned long long)huge;
 }
@@ -130,17 +130,18 @@ void stericol_cf_convert(const stericol_cf_conversion *conversion, double *value
 {
     const double scale = conversion->scale, offset = conversion->offset;
     const double low = conversion->low, high = conversion->high;
-    long long missing = 0, below = 0, above = 0;
+    double missing = 0.0, below = 0.0, above = 0.0;
     size_t i;
 
+#pragma omp simd reduction(+ : missing, below, above)
     for (i = 0; i < count; i++) {
         const double value = values[i] * scale + offset;
-        const long long is_below = value<low, is_above = value> high;
+        const double raised = value < low ? -(double)INFINITY : value;
 
-        missing += value != value;
-        below += is_below;
-        above += is_above;
-        values[i] = is_below ? -(double)INFINITY : is_above ? (double)INFINITY : value;
+        missing += isnan(value) ? 1.0 : 0.0;
+        below += (value < low) ? 1.0 : 0.0;
+        above += (value > high) ? 1.0 : 0.0;
+        values[i] = (value > high) ? (double)INFINITY : raised;
     }
     if (tally != NULL) {
         tally->values += count;

@@ -286,8 +286,8 @@ static void contiguous_files_tell_their_stride(void **state)
         size_t levels, rows;
     } cases[] = {
         {{LEVEL, ROW, COLUMN}, 1, 1},         {{ROW, COLUMN, LEVEL}, LEVELS, 1},
-        {{COLUMN, ROW, LEVEL}, LEVELS, ROWS}, {{LEVEL, COLUMN, ROW}, 1, ROWS},
-        {{ROW, LEVEL, COLUMN}, LEVELS, 1},    {{COLUMN, LEVEL, ROW}, LEVELS, ROWS},
+        {{COLUMN, ROW, LEVEL}, LEVELS, 1}, {{LEVEL, COLUMN, ROW}, 1, 1},
+        {{ROW, LEVEL, COLUMN}, LEVELS, 1},    {{COLUMN, LEVEL, ROW}, LEVELS, 1},
     };
     const stericol_cf_conversion same = {1.0, 0.0, (double)-INFINITY, (double)INFINITY};
     size_t n, levels, rows;
