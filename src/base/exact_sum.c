@@ -70,8 +70,12 @@ void stericol_exact_sum_add_product(stericol_exact_sum *sum, double a, double b)
     double product = a * b;
 
     stericol_exact_sum_add(sum, product);
-    if (isfinite(product))
-        stericol_exact_sum_add(sum, fma(a, b, -product));
+    if (isfinite(product)) {
+        double rest = fma(a, b, -product);
+
+        if (fabs(rest) > 0.0)
+            stericol_exact_sum_add(sum, rest);
+    }
 }
 
 void stericol_exact_sum_merge(stericol_exact_sum *sum, const stericol_exact_sum *other)

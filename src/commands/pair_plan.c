@@ -13,7 +13,7 @@
 
 /* Enough columns to keep the workers busy, and enough values that the cost of starting a slab does not show.
  */
-static const size_t ENOUGH_COLUMNS = 65536, ENOUGH_VALUES = 2000000;
+static const size_t ENOUGH_COLUMNS = 65536, ENOUGH_VALUES = 500000;
 
 static size_t smaller(size_t a, size_t b)
 {
