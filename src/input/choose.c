@@ -13,6 +13,10 @@ static const double lowest[STERICOL_INPUT_QUANTITIES] = {-4.0, 0.0};
 static const double highest[STERICOL_INPUT_QUANTITIES] = {45.0, 45.0};
 static const char *const targets[STERICOL_INPUT_QUANTITIES] = {"degree_Celsius", "1e-3"};
 
+/* Anomalies of absolute salinity reach 0.09 g/kg in the Baltic and 0.03 in the open sea (McDougall et al.
+ * 2012). */
+static const double most_anomaly = 1.0;
+
 void stericol_input_variable_clear(stericol_input_variable *variable)
 {
     free(variable->name);
@@ -145,6 +149,31 @@ static stericol_status pick_by_itself(const stericol_input_reader *reader, steri
     return status;
 }
 
+/* The only variable with levels that could be a field: an anomaly has no name of its own. */
+static stericol_status pick_only_field(const stericol_input_reader *reader,
+                                       const stericol_cf_variable **found, stericol_input_finding *finding)
+{
+    candidates all = {0};
+    stericol_status status = STERICOL_OK;
+    for (size_t i = 0; i < stericol_cf_variable_count(reader->file); i++) {
+        const stericol_cf_variable *variable = stericol_cf_variable_at(reader->file, i);
+        if (variable->rank < 3 || !stericol_input_is_field(reader->file, variable) ||
+            !has_level(reader, variable))
+            continue;
+        all.first = variable;
+        all.count++;
+        add_name(&all.names, variable);
+    }
+    if (all.count > 1)
+        status = stericol_input_refuse(reader, NULL, "give a file that holds the anomaly alone",
+                                       "%zu variables could be the salinity anomaly (%s)", all.count,
+                                       stericol_text_string(&all.names));
+    *found = status == STERICOL_OK ? all.first : NULL;
+    *finding = (stericol_input_finding){8, STERICOL_SALINITY_ABSOLUTE, false, "the only field of the file"};
+    stericol_text_free(&all.names);
+    return status;
+}
+
 /* The unit: given, missing, or wrong. */
 static stericol_status read_unit(const stericol_input_reader *reader, stericol_input_quantity quantity,
                                  const stericol_cf_variable *variable, stericol_input_variable *chosen)
@@ -152,6 +181,10 @@ static stericol_status read_unit(const stericol_input_reader *reader, stericol_i
     const char *unit = chosen->unit;
     stericol_cf_conversion *conversion = &chosen->conversion;
     *conversion = (stericol_cf_conversion){1.0, 0.0, lowest[quantity], highest[quantity]};
+    if (reader->request->salinity_anomaly) {
+        conversion->low = -most_anomaly;
+        conversion->high = most_anomaly;
+    }
     if (!unit || !unit[strspn(unit, " \t")]) {
         chosen->unit_assumed = true;
         stericol_input_say(reader, STERICOL_WARNING, variable->name,
@@ -246,7 +279,12 @@ static stericol_status fill(const stericol_input_reader *reader, stericol_input_
         stericol_input_say(reader, STERICOL_NOTE, variable->name,
                            "recognised as %s by %s, for want of a standard_name",
                            stericol_input_quantity_name[quantity], finding->reason);
-    settle_kind(reader, quantity, variable, chosen);
+    if (reader->request->salinity_anomaly) { /* it is what it was asked for as */
+        chosen->kind = STERICOL_SALINITY_ABSOLUTE;
+        chosen->kind_assumed = false;
+    } else {
+        settle_kind(reader, quantity, variable, chosen);
+    }
     const stericol_status status = read_unit(reader, quantity, variable, chosen);
     chosen->present = status == STERICOL_OK;
     return status;
@@ -263,6 +301,8 @@ stericol_status stericol_input_choose(const stericol_input_reader *reader, steri
         *found = stericol_cf_find(reader->file, name, NULL);
         if (*found)
             finding = stericol_input_kind_of(quantity, *found);
+    } else if (reader->request->salinity_anomaly) {
+        status = pick_only_field(reader, found, &finding);
     } else {
         status = pick_by_itself(reader, quantity, found, &finding);
     }

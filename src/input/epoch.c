@@ -73,6 +73,14 @@ static stericol_status agree_on_grid(const stericol_input_reader *reader, steric
 
 /* ---- one file ---- */
 
+/* Whether two variables of one file stand on the same axes in the same way. */
+static bool same_axes(const stericol_input_layout *a, const stericol_input_layout *b)
+{
+    return a->latitude == b->latitude && a->longitude == b->longitude && a->level == b->level &&
+           a->curvilinear == b->curvilinear && a->transposed == b->transposed && a->levels == b->levels &&
+           a->rows == b->rows && a->columns == b->columns;
+}
+
 static stericol_status same_kind(const stericol_input_reader *reader, const stericol_epoch *epoch,
                                  size_t index, stericol_input_quantity quantity)
 {
@@ -92,23 +100,29 @@ static stericol_status same_kind(const stericol_input_reader *reader, const ster
 }
 
 static stericol_status look_for(const stericol_input_reader *reader, stericol_epoch *epoch, size_t index,
-                                stericol_input_quantity quantity, stericol_cf_file *positions)
+                                stericol_input_quantity quantity, stericol_cf_file *positions,
+                                stericol_input_layout layouts[STERICOL_INPUT_QUANTITIES])
 {
     stericol_input_variable *chosen = &epoch->sources[index].variable[quantity];
+    const stericol_input_variable *other = &epoch->sources[index].variable[STERICOL_INPUT_TEMPERATURE];
+    stericol_input_layout *layout = &layouts[quantity];
     const stericol_cf_variable *found;
-    stericol_input_layout layout;
     stericol_status status = stericol_input_choose(reader, quantity, chosen, &found);
     if (status != STERICOL_OK || !found)
         return status;
     status = same_kind(reader, epoch, index, quantity);
     if (status == STERICOL_OK)
-        status = stericol_input_lay_out(reader, found, positions, true, &layout);
+        status = stericol_input_lay_out(reader, found, positions, true, layout);
     if (status != STERICOL_OK)
         return status;
-    chosen->axes = layout.axes;
-    status = agree_on_grid(reader, epoch, found, &layout, &chosen->reversed);
+    chosen->axes = layout->axes;
+    if (quantity != STERICOL_INPUT_TEMPERATURE && other->present &&
+        same_axes(layout, &layouts[STERICOL_INPUT_TEMPERATURE]))
+        chosen->reversed = other->reversed;
+    else
+        status = agree_on_grid(reader, epoch, found, layout, &chosen->reversed);
     if (status == STERICOL_OK)
-        status = stericol_input_read_times(reader, found->name, &layout, index, &epoch->states[quantity]);
+        status = stericol_input_read_times(reader, found->name, layout, index, &epoch->states[quantity]);
     return status;
 }
 
@@ -139,6 +153,7 @@ static stericol_status read_source(stericol_input_reader *reader, stericol_epoch
                                    stericol_cf_file *positions)
 {
     stericol_input_source *source = &epoch->sources[index];
+    stericol_input_layout layouts[STERICOL_INPUT_QUANTITIES];
     bool any = false;
     source->path = epoch->request.paths[index];
     stericol_status status = stericol_input_source_file(reader->context, epoch, index, &reader->file);
@@ -148,7 +163,7 @@ static stericol_status read_source(stericol_input_reader *reader, stericol_epoch
     source->id = stericol_copy_string(identity.id);
     for (int i = 0; i < STERICOL_INPUT_QUANTITIES && status == STERICOL_OK; i++) {
         if (wanted(epoch, (stericol_input_quantity)i))
-            status = look_for(reader, epoch, index, (stericol_input_quantity)i, positions);
+            status = look_for(reader, epoch, index, (stericol_input_quantity)i, positions, layouts);
         any = any || source->variable[i].present;
     }
     if (status == STERICOL_OK && !any)

@@ -41,15 +41,33 @@ typedef struct stericol_epoch_request {
     bool wants_temperature; /* false for a background salinity */
     bool wants_salinity;    /* false: the file need not have one (and none is read) */
     bool salinity_optional; /* a missing salinity is no error: stericol_epoch_has_salinity() tells */
-    size_t cache_bytes;     /* for the decoder, in all */
+    /*
+     * What is read in the place of salinity is an anomaly of absolute salinity in g/kg, within -1..1:
+     * `salinity`, or the only field with levels in the file.  wants_temperature must be false.
+     */
+    bool salinity_anomaly;
+    size_t cache_bytes; /* for the decoder, in all */
 } stericol_epoch_request;
 
 typedef struct stericol_epoch stericol_epoch;
 
 /*
  * Opens every file, chooses variables, axes, members, and checks that all files agree on one grid.  Every
- * decision and assumption goes out as a notice and is kept (stericol_epoch_assumption()). STERICOL_INPUT:
- * what cannot be used; STERICOL_NOTHING: a window or steps without data; STERICOL_MEMORY.
+ * decision and assumption goes out as a notice, once, and is kept (stericol_epoch_assumption()).
+ *
+ * Variables: standard_name, else a usual name or a long_name that names the kind; more than one equally good
+ * is refused.  Axes: standard_name, then units that name a direction or a date, _CoordinateAxisType, axis,
+ * positive, units of length or pressure, then usual names.  Intervals of times: bounds; without them the
+ * calendar month (year) that holds the stamp where stamps are monthly (yearly), else halfway to the
+ * neighbours.  A window takes the times whose middle lies in it.  Temperature and salinity of separate files
+ * are paired by time, within half an interval (without intervals: one day), or by order where neither has
+ * dates.  time_window and first_step exclude each other.
+ *
+ * STERICOL_INPUT: what cannot be used; STERICOL_NOTHING: a window or steps without data; STERICOL_USAGE: a
+ * window that cannot be read; STERICOL_MEMORY.  *epoch is NULL on failure.
+ *
+ * Files are looked at one after another; at most 64 stay open, the others are opened again when they are
+ * read, and refused if they were changed meanwhile.
  */
 stericol_status stericol_epoch_open(stericol_context *context, const stericol_cf_units *units,
                                     const stericol_epoch_request *request, stericol_epoch **epoch);
@@ -117,7 +135,14 @@ typedef struct stericol_epoch_tally {
  * +-INFINITY rejected (outside -4..45 degC, 0..45).  Dry cells (mask) are NaN.  Either pointer may be NULL.
  * tally: [levels], or NULL.
  * Averaging (docs, "Epochs"): within each calendar month by the members' lengths, then over the months
- * present by the months' lengths; a value needs least_times of the members.
+ * present by the months' lengths; a value needs least_times of the members.  A rejected value is left out
+ * like a missing one; where too few are left, the result is its infinity.  An epoch of one member is not
+ * averaged: the very bits of the file.
+ *
+ * STERICOL_INPUT: a read error; or, judged for each member and level as far as this call reads it, values
+ * that cannot be what they are called: more than a tenth of at least 20 outside the limits, any outside where
+ * the unit was assumed, salinities all below 0.05.  The message has the range met and the likely cause.
+ * STERICOL_MEMORY.  On failure the outputs hold nothing of use.
  */
 stericol_status stericol_epoch_load(stericol_context *context, stericol_epoch *epoch, size_t level0,
                                     size_t levels, size_t row0, size_t rows, double *temperature,

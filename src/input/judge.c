@@ -60,11 +60,13 @@ static bool within(const value_range *range, double low, double high)
 }
 
 /* The likely cause, and what can be done. */
-static const char *cause(stericol_input_quantity quantity, const value_range *range)
+static const char *cause(stericol_input_quantity quantity, bool anomaly, const value_range *range)
 {
     if (fabs(range->high - range->low) <= 0.0)
         return "one value only: perhaps a fill value that the file does not declare; declare it as "
                "_FillValue";
+    if (anomaly)
+        return "give a file of absolute salinity anomalies in g/kg";
     if (quantity == STERICOL_INPUT_TEMPERATURE) {
         if (within(range, 250.0, 320.0))
             return "these look like kelvin; correct the units attribute";
@@ -79,6 +81,13 @@ static const char *cause(stericol_input_quantity quantity, const value_range *ra
     if (within(range, 0.0, 0.05))
         return "these look like a mass fraction (kg/kg); correct the units attribute";
     return "correct the units or the packing of the variable, or name another with --salinity";
+}
+
+static const char *what_they_are(stericol_input_quantity quantity, bool anomaly)
+{
+    if (quantity == STERICOL_INPUT_TEMPERATURE)
+        return "sea temperatures";
+    return anomaly ? "salinity anomalies" : "salinities";
 }
 
 static stericol_status refuse(stericol_context *context, stericol_epoch *epoch,
@@ -102,10 +111,11 @@ static stericol_status refuse(stericol_context *context, stericol_epoch *epoch,
     else
         snprintf(unit, sizeof unit, "with the unit \"%.60s\"", chosen->unit);
     return stericol_fail(
-        context, STERICOL_INPUT, source->path, chosen->name, cause(quantity, &met),
+        context, STERICOL_INPUT, source->path, chosen->name,
+        cause(quantity, epoch->request.salinity_anomaly, &met),
         "%zu of %zu values at %s (%s) cannot be %s %s: they range from %.6g to %.6g after conversion",
-        outside, count, where, slab->when,
-        quantity == STERICOL_INPUT_TEMPERATURE ? "sea temperatures" : "salinities", unit, met.low, met.high);
+        outside, count, where, slab->when, what_they_are(quantity, epoch->request.salinity_anomaly), unit,
+        met.low, met.high);
 }
 
 /* Whether nine tenths of the values that are not 0 are too small for any sea: kg/kg called practical or g/kg.
@@ -129,7 +139,7 @@ stericol_status stericol_input_judge(stericol_context *context, stericol_epoch *
     const bool assumed = epoch->sources[slab->source].variable[quantity].unit_assumed;
     if (outside && (assumed || (there >= FEWEST && outside * 10 > there)))
         return refuse(context, epoch, quantity, slab, (size_t)outside, (size_t)there);
-    if (quantity == STERICOL_INPUT_SALINITY && is_fraction(values, count))
+    if (quantity == STERICOL_INPUT_SALINITY && !epoch->request.salinity_anomaly && is_fraction(values, count))
         return refuse(context, epoch, quantity, slab, (size_t)there, (size_t)there);
     return STERICOL_OK;
 }

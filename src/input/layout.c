@@ -252,7 +252,9 @@ static const stericol_cf_variable *find_scalar(const stericol_input_reader *read
     stericol_input_each_named(reader->file, variable, "coordinates", consider_scalar, &look);
     for (size_t i = 0; !look.found && i < stericol_cf_variable_count(reader->file); i++) {
         const stericol_cf_variable *other = stericol_cf_variable_at(reader->file, i);
-        if (other != variable)
+        const char *standard_name = stericol_cf_text_of(other, "standard_name");
+        /* Many a scalar holds a date or an angle; without a name for it, it is not that of the field. */
+        if (other != variable && (standard_name || stericol_input_role_of_name(other->short_name) == role))
             consider_scalar(&look, other);
     }
     return look.found;
@@ -386,6 +388,33 @@ static bool selected(const stericol_input_reader *reader, const char *name, size
     return false;
 }
 
+/* --select is for other dimensions; times and the rest have options of their own. */
+static stericol_status refuse_select(const stericol_input_reader *reader,
+                                     const stericol_cf_variable *variable, const stericol_cf_field_axes *axes)
+{
+    const struct {
+        int axis;
+        const char *remedy;
+    } taken[] = {{axes->time, "choose times by window or step"},
+                 {axes->level, "choose depths with --layers"},
+                 {axes->row, "choose a region"},
+                 {axes->column, "choose a region"}};
+    for (size_t i = 0; i < sizeof taken / sizeof *taken; i++) {
+        stericol_status status = STERICOL_OK;
+        size_t index;
+        if (taken[i].axis == STERICOL_CF_NO_AXIS)
+            continue;
+        const stericol_cf_dimension *dimension =
+            stericol_cf_dimension_at(reader->file, variable->dimension[taken[i].axis]);
+        if (selected(reader, dimension->name, dimension->length, &index, &status))
+            return stericol_input_refuse(reader, variable->name, taken[i].remedy,
+                                         "--select cannot pick from its dimension %s", dimension->name);
+        if (status != STERICOL_OK)
+            return status;
+    }
+    return STERICOL_OK;
+}
+
 static stericol_status settle_others(const stericol_input_reader *reader,
                                      const stericol_cf_variable *variable, stericol_input_layout *layout,
                                      bool with_level)
@@ -479,5 +508,6 @@ stericol_status stericol_input_lay_out(const stericol_input_reader *reader,
     if (!layout->levels || !layout->rows || !layout->columns)
         return stericol_input_refuse(reader, variable->name, "give a file that holds data",
                                      "one of its dimensions has length 0");
-    return settle_others(reader, variable, layout, with_level);
+    status = refuse_select(reader, variable, &layout->axes);
+    return status == STERICOL_OK ? settle_others(reader, variable, layout, with_level) : status;
 }

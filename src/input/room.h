@@ -97,6 +97,8 @@ typedef struct stericol_input_finding {
 stericol_input_finding stericol_input_recognise(stericol_input_quantity quantity,
                                                 const stericol_cf_file *file,
                                                 const stericol_cf_variable *variable);
+/* Whether a variable holds numbers that are no statistic, flag or error of another. */
+bool stericol_input_is_field(const stericol_cf_file *file, const stericol_cf_variable *variable);
 /* What a variable that the user named says of its kind; strength 0 where it says nothing. */
 stericol_input_finding stericol_input_kind_of(stericol_input_quantity quantity,
                                               const stericol_cf_variable *variable);
@@ -242,7 +244,7 @@ typedef struct stericol_input_source {
     unsigned long long last_used;
 } stericol_input_source;
 
-enum { STERICOL_INPUT_MOST_OPEN = 16 };
+enum { STERICOL_INPUT_MOST_OPEN = 64 };
 
 /* The file of `source`, opened again when it had been closed; the least used one is closed for it. */
 stericol_status stericol_input_source_file(stericol_context *context, stericol_epoch *epoch, size_t source,

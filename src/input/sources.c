@@ -71,8 +71,10 @@ stericol_status stericol_input_source_field(stericol_context *context, stericol_
         if (!variable)
             return stericol_fail(context, STERICOL_INPUT, source->path, chosen->name, "start again",
                                  "the variable is no longer in the file");
+        const size_t share = epoch->request.cache_bytes / (STERICOL_INPUT_QUANTITIES * open);
+        /* 0 would mean the decoder's own default. */
         status = stericol_cf_field_open(context, file, variable, &chosen->axes, &chosen->conversion,
-                                        epoch->request.cache_bytes / (STERICOL_INPUT_QUANTITIES * open),
+                                        epoch->request.cache_bytes && !share ? 1 : share,
                                         &source->field[quantity]);
     }
     *field = status == STERICOL_OK ? source->field[quantity] : NULL;

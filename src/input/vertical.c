@@ -324,8 +324,8 @@ stericol_status stericol_input_read_vertical(const stericol_input_reader *reader
         const bool measured =
             quantity == STERICOL_CF_QUANTITY_LENGTH || quantity == STERICOL_CF_QUANTITY_PRESSURE;
         const bool thickness = reader->request->thickness_file != NULL;
-        if (!thickness && (stericol_cf_text_of(axis.variable, "formula_terms") ||
-                           stericol_input_is_parametric(stericol_cf_text_of(axis.variable, "standard_name"))))
+        if ((stericol_cf_text_of(axis.variable, "formula_terms") ||
+             stericol_input_is_parametric(stericol_cf_text_of(axis.variable, "standard_name"))))
             status = take_parametric(reader, &axis, grid, reversed);
         else if (thickness && !measured && !reader->request->vertical_unit)
             status = take_numbers(reader, &axis, grid);

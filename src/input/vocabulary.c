@@ -15,7 +15,7 @@ typedef struct named_role {
     stericol_input_role role;
 } named_role;
 
-/* A standard name that is not here gives no role, whatever else the variable says. */
+/* A standard name that is not here gives no role, unless the variable has a usual name. */
 static const named_role standard_roles[] = {
     {"time", STERICOL_INPUT_TIME},
     {"latitude", STERICOL_INPUT_LATITUDE},
@@ -174,9 +174,13 @@ stericol_input_sign stericol_input_axis_sign(const stericol_cf_units *units,
                                              const stericol_cf_variable *variable)
 {
     const char *standard_name = stericol_cf_text_of(variable, "standard_name");
-    if (standard_name && *standard_name)
-        return sign(role_in(standard_roles, COUNT(standard_roles), standard_name),
-                    STERICOL_INPUT_BY_STANDARD_NAME, "standard_name");
+    if (standard_name && *standard_name) {
+        const stericol_input_role standard = role_in(standard_roles, COUNT(standard_roles), standard_name);
+        /* Some other quantity, unless its own name says that the standard name is a slip. */
+        if (standard != STERICOL_INPUT_NO_ROLE ||
+            stericol_input_role_of_name(variable->short_name) == STERICOL_INPUT_NO_ROLE)
+            return sign(standard, STERICOL_INPUT_BY_STANDARD_NAME, "standard_name");
+    }
     const stericol_input_sign by_units = sign_of_units(units, variable);
     if (by_units.strength == STERICOL_INPUT_BY_AXIS)
         return by_units;
@@ -326,6 +330,12 @@ static bool is_ancillary(const stericol_cf_file *file, const stericol_cf_variabl
     return false;
 }
 
+bool stericol_input_is_field(const stericol_cf_file *file, const stericol_cf_variable *variable)
+{
+    return variable->type != STERICOL_CF_CHAR && variable->type != STERICOL_CF_STRING &&
+           variable->type != STERICOL_CF_OTHER && !is_statistic(variable) && !is_ancillary(file, variable);
+}
+
 stericol_input_finding stericol_input_kind_of(stericol_input_quantity quantity,
                                               const stericol_cf_variable *variable)
 {
@@ -348,8 +358,7 @@ stericol_input_finding stericol_input_recognise(stericol_input_quantity quantity
                                                 const stericol_cf_variable *variable)
 {
     stericol_input_finding finding = stericol_input_kind_of(quantity, variable);
-    if (!finding.strength || variable->type == STERICOL_CF_CHAR || variable->type == STERICOL_CF_STRING ||
-        variable->type == STERICOL_CF_OTHER || is_statistic(variable) || is_ancillary(file, variable))
+    if (!finding.strength || !stericol_input_is_field(file, variable))
         return (stericol_input_finding){0};
     const char *standard_name = stericol_cf_text_of(variable, "standard_name");
     if (standard_name && *standard_name && finding.strength < 8)

@@ -331,6 +331,59 @@ static void test_axes(void **state)
     }
 }
 
+static double anomaly(size_t t, size_t k, size_t j, size_t i)
+{
+    (void)t;
+    (void)j;
+    return 0.005 * (double)k - 0.001 * (double)i;
+}
+
+/* An anomaly of salinity has no name of its own and may be negative. */
+static void test_salinity_anomaly(void **state)
+{
+    (void)state;
+    sea how = sea_plain("anomaly.nc");
+    double plane[SEA_POINTS];
+    try one;
+    how.order = "zyx";
+    how.temperature.name = NULL;
+    how.salinity = (sea_variable){"dsa", NULL, NULL, "g kg-1", 1.0, 0.0, anomaly};
+    try_begin(&one, sea_write(&how));
+    one.request.wants_temperature = false;
+    one.request.salinity_anomaly = true;
+    try_open(&one);
+    assert_string_equal(stericol_epoch_salinity(one.epoch).name, "dsa");
+    assert_string_equal(stericol_epoch_salinity(one.epoch).reason, "the only field of the file");
+    try_load(&one, 1, NULL, plane);
+    assert_same_number(plane[5], anomaly(0, 1, 0, 5));
+    try_end(&one);
+    /* Whole salinities are no anomalies. */
+    how.salinity.value = sea_salinity;
+    try_begin(&one, sea_write(&how));
+    one.request.wants_temperature = false;
+    one.request.salinity_anomaly = true;
+    try_open(&one);
+    assert_int_equal(stericol_epoch_load(one.seen.context, one.epoch, 0, 1, 0, SEA_ROWS, NULL, plane, NULL),
+                     STERICOL_INPUT);
+    stericol_text text = {0};
+    stericol_text_format(
+        &text,
+        "%s: dsa: 30 of 30 values at 5 m (step 1) cannot be salinity anomalies with the unit \"g "
+        "kg-1\": they range from 33.375 to 34.5 after conversion; give a file of absolute salinity "
+        "anomalies in g/kg",
+        one.paths[0]);
+    assert_string_equal(stericol_context_message(one.seen.context), stericol_text_string(&text));
+    stericol_text_free(&text);
+    try_end(&one);
+    how = sea_plain("anomaly.nc");
+    try_begin(&one, sea_write(&how));
+    one.request.wants_temperature = false;
+    one.request.salinity_anomaly = true;
+    assert_open_fails(
+        &one, STERICOL_INPUT,
+        "2 variables could be the salinity anomaly (theta, sal); give a file that holds the anomaly alone");
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
@@ -341,6 +394,7 @@ int main(void)
         cmocka_unit_test(test_standard_name_wins),
         cmocka_unit_test(test_absent),
         cmocka_unit_test(test_axes),
+        cmocka_unit_test(test_salinity_anomaly),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -184,6 +184,12 @@ static void test_dimensions(void **state)
         try_end(&one);
     }
     how = sea_plain("dimensions.nc");
+    static const char *level = "depth=2";
+    try_begin(&one, sea_write(&how));
+    one.request.select = &level;
+    one.request.select_count = 1;
+    assert_open_fails(&one, STERICOL_INPUT,
+                      "theta: --select cannot pick from its dimension depth; choose depths with --layers");
     static const char *nowhere = "member=1";
     try_begin(&one, sea_write(&how));
     one.request.select = &nowhere;
