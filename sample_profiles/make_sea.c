@@ -91,7 +91,7 @@ static int create(const char *name, char *path, size_t room, const char *title)
 
     snprintf(path, room, "%s/%s", folder_path, name);
     check(nc_create(path, NC_NETCDF4 | NC_CLOBBER, &file), path);
-    check(nc_put_att_text(file, NC_GLOBAL, "Conventions", 6, "CF-1.10"), path);
+    check(nc_put_att_text(file, NC_GLOBAL, "Conventions", strlen("CF-1.10"), "CF-1.10"), path);
     check(nc_put_att_text(file, NC_GLOBAL, "title", strlen(title), title), path);
     return file;
 }
