@@ -264,6 +264,32 @@ void sea_put(const char *path, const char *variable, size_t index, double value)
     must(nc_close(file));
 }
 
+static const made_format netcdf4 = {"", NC_NETCDF4, true, true, false};
+
+void sea_add(int file, const char *name, const char *dimensions, const sea_text *attributes, size_t count,
+             const double *values)
+{
+    int dimension[4], variable;
+    size_t rank = 0;
+    char copy[64], *rest = copy;
+    (void)snprintf(copy, sizeof copy, "%s", dimensions);
+    for (char *word = strtok_r(copy, " ", &rest); word; word = strtok_r(NULL, " ", &rest))
+        must(nc_inq_dimid(file, word, &dimension[rank++]));
+    must(nc_def_var(file, name, NC_DOUBLE, (int)rank, dimension, &variable));
+    for (size_t i = 0; i < count; i++)
+        must(nc_put_att_text(file, variable, attributes[i].name, strlen(attributes[i].text),
+                             attributes[i].text));
+    must(nc_put_var_double(file, variable, values));
+}
+
+int sea_plane_file(const char *name, size_t rows, size_t columns)
+{
+    int file = made_create(&netcdf4, name), dimension;
+    must(nc_def_dim(file, "lat", rows, &dimension));
+    must(nc_def_dim(file, "lon", columns, &dimension));
+    return file;
+}
+
 /* ---- epochs ---- */
 
 void try_begin(try *one, const char *path)

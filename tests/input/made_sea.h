@@ -68,6 +68,17 @@ void sea_changed(int file);
 void sea_attribute(const char *path, const char *variable, const char *name, const char *text);
 void sea_put(const char *path, const char *variable, size_t index, double value);
 
+/* A text attribute. */
+typedef struct sea_text {
+    const char *name, *text;
+} sea_text;
+/* Defines a variable on the dimensions of these names (blanks between them), with text attributes, and fills
+ * it. */
+void sea_add(int file, const char *name, const char *dimensions, const sea_text *attributes, size_t count,
+             const double *values);
+/* A new NetCDF-4 file with dimensions lat and lon; its handle. */
+int sea_plane_file(const char *name, size_t rows, size_t columns);
+
 /* Everything that a test of an epoch needs. */
 typedef struct
 try {

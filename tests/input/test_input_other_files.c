@@ -1,6 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Grids that are not plain, and what other files add: areas, masks, thicknesses, positions, sea floor,
- * regions. */
+/* Grids that are not plain, and what other files add: positions, areas, masks, thicknesses. */
 #include "made_sea.h"
 
 #include <stdio.h>
@@ -8,37 +7,7 @@
 #include <string.h>
 
 static const made_format netcdf4 = {"", NC_NETCDF4, true, true, false};
-
-typedef struct attribute {
-    const char *name, *text;
-} attribute;
-
-/* Defines a variable on the dimensions of these names, with text attributes, and fills it. */
-static void add(int file, const char *name, const char *dimensions, const attribute *attributes, size_t count,
-                const double *values)
-{
-    int dimension[4], variable;
-    size_t rank = 0;
-    char copy[64], *rest = copy;
-    (void)snprintf(copy, sizeof copy, "%s", dimensions);
-    for (char *word = strtok_r(copy, " ", &rest); word; word = strtok_r(NULL, " ", &rest))
-        must(nc_inq_dimid(file, word, &dimension[rank++]));
-    must(nc_def_var(file, name, NC_DOUBLE, (int)rank, dimension, &variable));
-    for (size_t i = 0; i < count; i++)
-        must(nc_put_att_text(file, variable, attributes[i].name, strlen(attributes[i].text),
-                             attributes[i].text));
-    must(nc_put_var_double(file, variable, values));
-}
-
-static int new_plane_file(const char *name, size_t rows, size_t columns)
-{
-    int file = made_create(&netcdf4, name), dimension;
-    must(nc_def_dim(file, "lat", rows, &dimension));
-    must(nc_def_dim(file, "lon", columns, &dimension));
-    return file;
-}
-
-static const attribute north[] = {{"units", "degrees_north"}}, east[] = {{"units", "degrees_east"}};
+static const sea_text north[] = {{"units", "degrees_north"}}, east[] = {{"units", "degrees_east"}};
 
 /* ---- positions ---- */
 
@@ -72,20 +41,20 @@ static const char *write_curved(const char *name, bool field_turned, bool positi
     const char *yx = named ? "y x" : "rr cc", *xy = named ? "x y" : "cc rr";
     char dimensions[32];
     (void)snprintf(dimensions, sizeof dimensions, "depth %s", field_turned ? xy : yx);
-    const attribute metres[] = {{"units", "m"}};
-    const attribute temperature[] = {{"units", "degC"}, {"coordinates", "nav_lat nav_lon"}};
-    const attribute salinity[] = {{"units", "PSU"}, {"coordinates", "nav_lat nav_lon"}};
-    add(file, "depth", "depth", metres, 1, levels);
-    add(file, "temp", dimensions, temperature, inside ? 2 : 1, values);
-    add(file, "salt", dimensions, salinity, inside ? 2 : 1, values);
+    const sea_text metres[] = {{"units", "m"}};
+    const sea_text temperature[] = {{"units", "degC"}, {"coordinates", "nav_lat nav_lon"}};
+    const sea_text salinity[] = {{"units", "PSU"}, {"coordinates", "nav_lat nav_lon"}};
+    sea_add(file, "depth", "depth", metres, 1, levels);
+    sea_add(file, "temp", dimensions, temperature, inside ? 2 : 1, values);
+    sea_add(file, "salt", dimensions, salinity, inside ? 2 : 1, values);
     if (inside) {
-        const attribute with_bounds[2][2] = {{north[0], {"bounds", "lat_corners"}},
-                                             {east[0], {"bounds", "lon_corners"}}};
-        add(file, "nav_lat", positions_turned ? xy : yx, with_bounds[0], 2, latitude);
-        add(file, "nav_lon", positions_turned ? xy : yx, with_bounds[1], 2, longitude);
+        const sea_text with_bounds[2][2] = {{north[0], {"bounds", "lat_corners"}},
+                                            {east[0], {"bounds", "lon_corners"}}};
+        sea_add(file, "nav_lat", positions_turned ? xy : yx, with_bounds[0], 2, latitude);
+        sea_add(file, "nav_lon", positions_turned ? xy : yx, with_bounds[1], 2, longitude);
         (void)snprintf(dimensions, sizeof dimensions, "%s corner", positions_turned ? xy : yx);
-        add(file, "lat_corners", dimensions, NULL, 0, corner_latitude);
-        add(file, "lon_corners", dimensions, NULL, 0, corner_longitude);
+        sea_add(file, "lat_corners", dimensions, NULL, 0, corner_latitude);
+        sea_add(file, "lon_corners", dimensions, NULL, 0, corner_longitude);
     }
     must(nc_close(file));
     return made_path(name);
@@ -166,16 +135,16 @@ static void test_single_column(void **state)
     static const double levels[3] = {10.0, 30.0, 50.0}, values[3] = {3.0, 2.0, 1.0}, latitude = 12.5,
                         longitude = -30.0;
     int file = made_create(&netcdf4, "column.nc"), dimension;
-    const attribute metres[] = {{"units", "dbar"}}, degrees[] = {{"units", "degC"}},
-                    psu[] = {{"units", "PSU"}};
+    const sea_text metres[] = {{"units", "dbar"}}, degrees[] = {{"units", "degC"}},
+                   psu[] = {{"units", "PSU"}};
     double plane[1];
     try one;
     must(nc_def_dim(file, "pressure", 3, &dimension));
-    add(file, "pressure", "pressure", metres, 1, levels);
-    add(file, "temp", "pressure", degrees, 1, values);
-    add(file, "salt", "pressure", psu, 1, values);
-    add(file, "lat", "", north, 1, &latitude);
-    add(file, "lon", "", east, 1, &longitude);
+    sea_add(file, "pressure", "pressure", metres, 1, levels);
+    sea_add(file, "temp", "pressure", degrees, 1, values);
+    sea_add(file, "salt", "pressure", psu, 1, values);
+    sea_add(file, "lat", "", north, 1, &latitude);
+    sea_add(file, "lon", "", east, 1, &longitude);
     must(nc_close(file));
     try_begin(&one, made_path("column.nc"));
     try_open(&one);
@@ -197,14 +166,14 @@ static void test_unstructured(void **state)
     static const double levels[2] = {10.0, 30.0}, values[6] = {3.0, 2.0, 1.0, 3.0, 2.0, 1.0},
                         places[3] = {1.0, 2.0, 3.0};
     int file = made_create(&netcdf4, "cells.nc"), dimension;
-    const attribute metres[] = {{"units", "m"}}, degrees[] = {{"units", "degC"}, {"coordinates", "lat lon"}};
+    const sea_text metres[] = {{"units", "m"}}, degrees[] = {{"units", "degC"}, {"coordinates", "lat lon"}};
     try one;
     must(nc_def_dim(file, "depth", 2, &dimension));
     must(nc_def_dim(file, "ncells", 3, &dimension));
-    add(file, "depth", "depth", metres, 1, levels);
-    add(file, "temp", "depth ncells", degrees, 2, values);
-    add(file, "lat", "ncells", north, 1, places);
-    add(file, "lon", "ncells", east, 1, places);
+    sea_add(file, "depth", "depth", metres, 1, levels);
+    sea_add(file, "temp", "depth ncells", degrees, 2, values);
+    sea_add(file, "lat", "ncells", north, 1, places);
+    sea_add(file, "lon", "ncells", east, 1, places);
     must(nc_close(file));
     try_begin(&one, made_path("cells.nc"));
     assert_open_fails(
@@ -319,14 +288,14 @@ static void test_cell_areas(void **state)
     try one;
     for (int i = 0; i < SEA_POINTS; i++)
         areas[i] = 100.0 + i;
-    const attribute area[] = {{"standard_name", "cell_area"}, {"units", "km2"}};
+    const sea_text area[] = {{"standard_name", "cell_area"}, {"units", "km2"}};
     for (int kind = 0; kind < 2; kind++) {
         char path[256], other[256];
         (void)snprintf(path, sizeof path, "%s", sea_write(&how));
         (void)snprintf(other, sizeof other, "%s", made_path("area_alone.nc"));
         sea_attribute(path, "theta", "cell_measures", "volume: v area: areacello");
-        int file = kind == 0 ? sea_change(path) : new_plane_file("area_alone.nc", SEA_ROWS, SEA_COLUMNS);
-        add(file, kind == 0 ? "areacello" : "a", "lat lon", area, 2, areas);
+        int file = kind == 0 ? sea_change(path) : sea_plane_file("area_alone.nc", SEA_ROWS, SEA_COLUMNS);
+        sea_add(file, kind == 0 ? "areacello" : "a", "lat lon", area, 2, areas);
         must(nc_close(file));
         try_begin(&one, path);
         if (kind == 1)
@@ -347,9 +316,9 @@ static void test_cell_areas(void **state)
     assert_assumed(&one, "theta: its cell areas \"areacello\" are in another file (--cell-area); areas are "
                          "computed from the positions");
     try_end(&one);
-    int file = new_plane_file("area_wrong.nc", SEA_ROWS, SEA_COLUMNS + 1);
+    int file = sea_plane_file("area_wrong.nc", SEA_ROWS, SEA_COLUMNS + 1);
     double more[SEA_ROWS * (SEA_COLUMNS + 1)] = {0.0};
-    add(file, "a", "lat lon", area, 2, more);
+    sea_add(file, "a", "lat lon", area, 2, more);
     must(nc_close(file));
     char wrong[256];
     (void)snprintf(wrong, sizeof wrong, "%s", made_path("area_wrong.nc"));
@@ -373,13 +342,13 @@ static void test_land_masks(void **state)
     double values[SEA_POINTS], plane[SEA_POINTS];
     for (size_t n = 0; n < sizeof cases / sizeof *cases; n++) {
         sea how = sea_plain("masked.nc");
-        const attribute name[] = {{"standard_name", cases[n].standard_name}};
+        const sea_text name[] = {{"standard_name", cases[n].standard_name}};
         char path[256];
         try one;
         for (int i = 0; i < SEA_POINTS; i++)
             values[i] = i % 3 == 0 ? cases[n].land : cases[n].sea;
-        int file = new_plane_file("mask.nc", SEA_ROWS, SEA_COLUMNS);
-        add(file, cases[n].name, "lat lon", name, cases[n].standard_name ? 1 : 0, values);
+        int file = sea_plane_file("mask.nc", SEA_ROWS, SEA_COLUMNS);
+        sea_add(file, cases[n].name, "lat lon", name, cases[n].standard_name ? 1 : 0, values);
         must(nc_close(file));
         (void)snprintf(path, sizeof path, "%s", made_path("mask.nc"));
         try_begin(&one, sea_write(&how));
@@ -441,9 +410,9 @@ static void test_thickness(void **state)
         }
         other.temperature.name = other.salinity.name = NULL;
         (void)snprintf(path, sizeof path, "%s", sea_write(&other));
-        const attribute thickness[] = {{"standard_name", "cell_thickness"}, {"units", "m"}};
+        const sea_text thickness[] = {{"standard_name", "cell_thickness"}, {"units", "m"}};
         int file = sea_change(path);
-        add(file, "thkcello", "depth lat lon", thickness, 2, values);
+        sea_add(file, "thkcello", "depth lat lon", thickness, 2, values);
         must(nc_close(file));
         try_begin(&one, sea_write(&how));
         one.request.thickness_file = path;
@@ -480,6 +449,42 @@ static void test_thickness(void **state)
     }
 }
 
+/* Parametric levels tell their order even where the depths come from another file. */
+static const char *write_terrain(const char *standard_name, bool edges, bool with_eta);
+static void test_thickness_of_terrain(void **state)
+{
+    (void)state;
+    double values[12], depth[4], plane[4];
+    const double latitude[2] = {10.0, 20.0}, longitude[2] = {30.0, 40.0};
+    const sea_text metres[] = {{"units", "m"}};
+    int dimension;
+    char path[256];
+    try one;
+    const int file = sea_plane_file("layers.nc", 2, 2);
+    must(nc_def_dim(file, "s_rho", 3, &dimension));
+    for (int p = 0; p < 12; p++)
+        values[p] = 10.0 * (3 - p / 4); /* 30 m at the bottom, 10 m at the surface */
+    sea_add(file, "lat", "lat", north, 1, latitude);
+    sea_add(file, "lon", "lon", east, 1, longitude);
+    sea_add(file, "dz", "s_rho lat lon", metres, 1, values);
+    must(nc_close(file));
+    (void)snprintf(path, sizeof path, "%s", made_path("layers.nc"));
+    try_begin(&one, write_terrain("ocean_s_coordinate_g2", false, true));
+    one.request.thickness_file = path;
+    try_open(&one);
+    static const double expected[3] = {5.0, 20.0, 45.0};
+    for (size_t k = 0; k < 3; k++) {
+        assert_int_equal(
+            stericol_epoch_load_depths(one.seen.context, one.epoch, k, 1, 0, 2, depth, NULL, NULL),
+            STERICOL_OK);
+        assert_int_equal(stericol_epoch_load(one.seen.context, one.epoch, k, 1, 0, 2, plane, NULL, NULL),
+                         STERICOL_OK);
+        assert_close(depth[3], expected[k], 1e-12);
+        assert_same_number(plane[0], (double)(4 * (2 - k)));
+    }
+    try_end(&one);
+}
+
 /* s(k) = -(k + 1/2)/3, C = s^2 sign -> -s^2; depth 300 + 100 column, eta 0.6 + 0.1 row. */
 static const char *write_terrain(const char *standard_name, bool edges, bool with_eta)
 {
@@ -509,26 +514,26 @@ static const char *write_terrain(const char *standard_name, bool edges, bool wit
                               : "s: s_rho C: Cs_r eta: zeta depth: h depth_c: hc a: theta_s b: theta_b";
     const char *limits = sigma ? "sigma: s_w eta: zeta depth: h"
                                : "s: s_w C: Cs_w eta: zeta depth: h depth_c: hc a: theta_s b: theta_b";
-    const attribute axis[] = {{"standard_name", standard_name}, {"formula_terms", terms}, {"positive", "up"}};
-    const attribute axis_w[] = {
+    const sea_text axis[] = {{"standard_name", standard_name}, {"formula_terms", terms}, {"positive", "up"}};
+    const sea_text axis_w[] = {
         {"standard_name", standard_name}, {"formula_terms", limits}, {"positive", "up"}};
-    const attribute metres[] = {{"units", "meter"}}, degrees[] = {{"units", "Celsius"}},
-                    psu[] = {{"units", "PSU"}};
-    add(file, "s_rho", "s_rho", axis, 3, s);
+    const sea_text metres[] = {{"units", "meter"}}, degrees[] = {{"units", "Celsius"}},
+                   psu[] = {{"units", "PSU"}};
+    sea_add(file, "s_rho", "s_rho", axis, 3, s);
     if (edges)
-        add(file, "s_w", "s_w", axis_w, 3, sw);
-    add(file, "Cs_r", "s_rho", NULL, 0, c);
-    add(file, "Cs_w", "s_w", NULL, 0, cw);
-    add(file, "hc", "", metres, 1, &critical);
-    add(file, "theta_s", "", NULL, 0, &a);
-    add(file, "theta_b", "", NULL, 0, &b);
-    add(file, "lat", "lat", north, 1, latitude);
-    add(file, "lon", "lon", east, 1, longitude);
-    add(file, "h", "lat lon", metres, 1, depth);
+        sea_add(file, "s_w", "s_w", axis_w, 3, sw);
+    sea_add(file, "Cs_r", "s_rho", NULL, 0, c);
+    sea_add(file, "Cs_w", "s_w", NULL, 0, cw);
+    sea_add(file, "hc", "", metres, 1, &critical);
+    sea_add(file, "theta_s", "", NULL, 0, &a);
+    sea_add(file, "theta_b", "", NULL, 0, &b);
+    sea_add(file, "lat", "lat", north, 1, latitude);
+    sea_add(file, "lon", "lon", east, 1, longitude);
+    sea_add(file, "h", "lat lon", metres, 1, depth);
     if (with_eta)
-        add(file, "zeta", "lat lon", metres, 1, eta);
-    add(file, "temp", "s_rho lat lon", degrees, 1, values);
-    add(file, "salt", "s_rho lat lon", psu, 1, values);
+        sea_add(file, "zeta", "lat lon", metres, 1, eta);
+    sea_add(file, "temp", "s_rho lat lon", degrees, 1, values);
+    sea_add(file, "salt", "s_rho lat lon", psu, 1, values);
     must(nc_close(file));
     return made_path("terrain.nc");
 }
@@ -604,197 +609,6 @@ static void test_terrain(void **state)
                       "the missing part into the file, or give the cells with --thickness");
 }
 
-/* ---- sea floor ---- */
-
-static void grid_of(stericol_grid *grid, double *latitude, double *longitude, size_t rows, size_t columns)
-{
-    *grid = (stericol_grid){.rows = rows, .columns = columns, .latitude = latitude, .longitude = longitude};
-}
-
-static void test_bathymetry(void **state)
-{
-    (void)state;
-    double latitude[2] = {0.0, 10.0}, longitude[3] = {350.0, 0.0, 10.0}, fine_latitude[4], fine_longitude[6],
-           heights[24];
-    stericol_grid grid;
-    double *depth = NULL;
-    watched seen;
-    stericol_cf_units *units;
-    watch(&seen);
-    assert_int_equal(stericol_cf_units_new(seen.context, &units), STERICOL_OK);
-    longitude[1] = 360.0;
-    longitude[2] = 370.0;
-    grid_of(&grid, latitude, longitude, 2, 3);
-    for (int i = 0; i < 4; i++)
-        fine_latitude[i] = -2.5 + 5.0 * i;
-    for (int i = 0; i < 6; i++)
-        fine_longitude[i] = -12.5 + 5.0 * i; /* another branch */
-    for (int i = 0; i < 24; i++)
-        heights[i] = -1000.0 - 100.0 * (i % 6) - 10.0 * (i / 6.0 - (i % 6) / 6.0);
-    heights[0] = 50.0;                                          /* land in a cell of sea */
-    heights[4] = heights[5] = heights[10] = heights[11] = 20.0; /* a cell of land */
-    const attribute name[] = {{"standard_name", "altitude"}, {"units", "m"}};
-    int file = new_plane_file("floor.nc", 4, 6);
-    add(file, "lat", "lat", north, 1, fine_latitude);
-    add(file, "lon", "lon", east, 1, fine_longitude);
-    add(file, "elevation", "lat lon", name, 2, heights);
-    must(nc_close(file));
-    assert_int_equal(stericol_input_bathymetry(seen.context, units, made_path("floor.nc"), &grid, &depth),
-                     STERICOL_OK);
-    assert_close(depth[0], (1100.0 + 1010.0 + 1110.0) / 3.0, 1e-9);
-    assert_close(depth[1], (1200.0 + 1300.0 + 1210.0 + 1310.0) / 4.0, 1e-9);
-    assert_nan(depth[2]);
-    assert_close(depth[3], (1020.0 + 1120.0 + 1030.0 + 1130.0) / 4.0, 1e-9);
-    free(depth);
-    /* On the very grid: as it is; positive down by its name. */
-    static const double same[6] = {100.0, 200.0, 0.0, 400.0, -5.0, 600.0};
-    const attribute down[] = {{"standard_name", "sea_floor_depth_below_geoid"}, {"units", "km"}};
-    double kilometres[6];
-    for (int i = 0; i < 6; i++)
-        kilometres[i] = same[i] / 1000.0;
-    file = new_plane_file("floor.nc", 2, 3);
-    add(file, "lat", "lat", north, 1, latitude);
-    add(file, "lon", "lon", east, 1, longitude);
-    add(file, "deptho", "lat lon", down, 2, kilometres);
-    must(nc_close(file));
-    assert_int_equal(stericol_input_bathymetry(seen.context, units, made_path("floor.nc"), &grid, &depth),
-                     STERICOL_OK);
-    for (int i = 0; i < 6; i++)
-        if (same[i] > 0.0)
-            assert_close(depth[i], same[i], 1e-9);
-        else
-            assert_nan(depth[i]);
-    free(depth);
-    /* A coarser source: the nearest. */
-    const double coarse_latitude[1] = {4.0}, coarse_longitude[2] = {0.0, 180.0},
-                 coarse[2] = {-3000.0, -100.0};
-    const attribute metres[] = {{"units", "m"}};
-    file = new_plane_file("floor.nc", 1, 2);
-    add(file, "lat", "lat", north, 1, coarse_latitude);
-    add(file, "lon", "lon", east, 1, coarse_longitude);
-    add(file, "z", "lat lon", metres, 1, coarse);
-    must(nc_close(file));
-    assert_int_equal(stericol_input_bathymetry(seen.context, units, made_path("floor.nc"), &grid, &depth),
-                     STERICOL_OK);
-    for (int i = 0; i < 6; i++)
-        assert_close(depth[i], 3000.0, 1e-9);
-    free(depth);
-    assert_int_equal(stericol_input_bathymetry(seen.context, units, made_path("areas2.nc"), &grid, &depth),
-                     STERICOL_INPUT);
-    assert_null(depth);
-    assert_non_null(
-        strstr(stericol_context_message(seen.context),
-               "no sea floor depth was recognised (0 variables fit); give a file with one variable of "
-               "standard_name sea_floor_depth_below_geoid"));
-    stericol_cf_units_free(units);
-    unwatch(&seen);
-}
-
-/* ---- masks of regions ---- */
-
-static const char *write_regions(const char *meanings, const signed char *flags, size_t count, bool text)
-{
-    static const double latitude[2] = {0.0, 10.0}, longitude[2] = {20.0, 30.0};
-    static const signed char values[4] = {0, 3, 7, 3};
-    int file = new_plane_file("regions.nc", 2, 2), dimension[2] = {0, 1}, variable;
-    add(file, "lat", "lat", north, 1, latitude);
-    add(file, "lon", "lon", east, 1, longitude);
-    must(nc_def_var(file, "basin", NC_BYTE, 2, dimension, &variable));
-    must(nc_put_att_text(file, variable, "flag_meanings", strlen(meanings), meanings));
-    if (text)
-        must(nc_put_att_text(file, variable, "flag_values", 10, "0b, 3b, 7b"));
-    else
-        must(nc_put_att_schar(file, variable, "flag_values", NC_BYTE, count, flags));
-    must(nc_put_var_schar(file, variable, values));
-    must(nc_close(file));
-    return made_path("regions.nc");
-}
-
-static void test_region_mask(void **state)
-{
-    (void)state;
-    static const signed char flags[3] = {0, 3, 7};
-    double latitude[2] = {0.0, 10.0}, longitude[2] = {20.0, 30.0}, elsewhere[2] = {20.0, 31.0};
-    stericol_grid grid;
-    watched seen;
-    stericol_input_mask mask;
-    watch(&seen);
-    grid_of(&grid, latitude, longitude, 2, 2);
-    for (int text = 0; text < 2; text++) {
-        const char *path = write_regions("land  inner_velm outer_velm", flags, 3, text);
-        assert_int_equal(stericol_input_mask_read(seen.context, path, &grid, &mask), STERICOL_OK);
-        assert_int_equal(mask.count, 2);
-        assert_string_equal(mask.names[0], "inner_velm");
-        assert_string_equal(mask.names[1], "outer_velm");
-        static const unsigned char expected[4] = {0, 1, 2, 1};
-        assert_memory_equal(mask.index, expected, 4);
-        stericol_input_mask_free(&mask);
-    }
-    static const struct {
-        const char *meanings;
-        size_t count;
-        const char *message;
-    } cases[] = {{"none one", 3,
-                  "basin: flag_values has 3 entries, flag_meanings has another number; give one meaning for "
-                  "each flag"},
-                 {"none one", 2,
-                  "basin: the value 7 is none of its flag_values; add the value to flag_values and "
-                  "flag_meanings"}};
-    for (size_t i = 0; i < 2; i++) {
-        stericol_text text = {0};
-        const char *path = write_regions(cases[i].meanings, flags, cases[i].count, false);
-        stericol_context_clear(seen.context);
-        stericol_text_format(&text, "%s: %s", path, cases[i].message);
-        assert_int_equal(stericol_input_mask_read(seen.context, path, &grid, &mask), STERICOL_INPUT);
-        assert_string_equal(stericol_context_message(seen.context), stericol_text_string(&text));
-        assert_null(mask.index);
-        stericol_text_free(&text);
-    }
-    stericol_text text = {0};
-    const char *path = write_regions("none inner_velm outer_velm", flags, 3, false);
-    grid_of(&grid, latitude, elsewhere, 2, 2);
-    stericol_context_clear(seen.context);
-    stericol_text_format(
-        &text,
-        "%s: basin: its grid is not that of the field: longitude number 2 differs: 30 against 31; give it "
-        "on the grid of the field",
-        path);
-    assert_int_equal(stericol_input_mask_read(seen.context, path, &grid, &mask), STERICOL_INPUT);
-    assert_string_equal(stericol_context_message(seen.context), stericol_text_string(&text));
-    stericol_text_free(&text);
-    unwatch(&seen);
-}
-
-/* ---- the same grid ---- */
-
-static void test_grid_same(void **state)
-{
-    (void)state;
-    double latitude[2] = {0.0, 10.0}, longitude[2] = {20.0, 350.0}, branch[2] = {20.0, -10.0},
-           level[2] = {5.0, 5000.0};
-    double as_float[2] = {5.0, 5000.0004}, moved[2] = {0.0, 10.01};
-    char text[160];
-    stericol_grid a, b;
-    grid_of(&a, latitude, longitude, 2, 2);
-    a.levels = 2;
-    a.level = level;
-    b = a;
-    b.longitude = branch;
-    b.level = as_float;
-    assert_true(stericol_grid_same(&a, &b, text, sizeof text));
-    b.latitude = moved;
-    assert_false(stericol_grid_same(&a, &b, text, sizeof text));
-    assert_string_equal(text, "latitude number 2 differs: 10 against 10.01");
-    b = a;
-    b.levels = 1;
-    assert_false(stericol_grid_same(&a, &b, text, sizeof text));
-    assert_string_equal(text, "2 x 2 x 2 against 1 x 2 x 2 levels, rows, columns");
-    b = a;
-    b.vertical = STERICOL_VERTICAL_PRESSURE;
-    assert_false(stericol_grid_same(&a, &b, text, sizeof text));
-    assert_string_equal(text, "one has levels of depth, the other of pressure");
-}
-
 int main(void)
 {
     const struct CMUnitTest tests[] = {
@@ -803,9 +617,8 @@ int main(void)
         cmocka_unit_test(test_pressure),       cmocka_unit_test(test_vertical_unit_option),
         cmocka_unit_test(test_awkward_bounds), cmocka_unit_test(test_cell_areas),
         cmocka_unit_test(test_land_masks),     cmocka_unit_test(test_zeros_are_counted),
-        cmocka_unit_test(test_thickness),      cmocka_unit_test(test_terrain),
-        cmocka_unit_test(test_bathymetry),     cmocka_unit_test(test_region_mask),
-        cmocka_unit_test(test_grid_same),
+        cmocka_unit_test(test_thickness),      cmocka_unit_test(test_thickness_of_terrain),
+        cmocka_unit_test(test_terrain),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
