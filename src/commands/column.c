@@ -49,6 +49,25 @@ static stericol_status read_levels(stericol_session *session, bool single, const
     return status;
 }
 
+/* Small tables are often coarser than the rule that serves casts: the numbers say what to give. */
+static void warn_of_gap(stericol_session *session, const stericol_working *working)
+{
+    const double reached = working->reached;
+    size_t next = 0;
+
+    while (next < working->row_count &&
+           !(working->rows[next].depth > reached + 1e-6 && isfinite(working->rows[next].expansion)))
+        next++;
+    if (next == working->row_count)
+        return;
+    stericol_session_warn(
+        session,
+        "the column ends at %g m: the next level is %g m further down, and --gap-reach bridges "
+        "%g m",
+        reached, working->rows[next].depth - reached,
+        stericol_working_gap_reach(working->options->gap_reach, reached));
+}
+
 static void warn(stericol_session *session, const stericol_working *working)
 {
     const stericol_working_levels *levels = working->levels;
@@ -65,9 +84,7 @@ static void warn(stericol_session *session, const stericol_working *working)
             "%zu values lie outside the range that the equation of state was made for; they were used",
             outside);
     if (working->flag == STERICOL_COLUMN_GAP)
-        stericol_session_warn(
-            session, "the column ends at %g m: the next level is further away than --gap-reach allows",
-            working->reached);
+        warn_of_gap(session, working);
     if (working->flag == STERICOL_COLUMN_UNEQUAL)
         stericol_session_warn(
             session, "one table reaches deeper than the other: only the common depth, to %g m, counts",

@@ -57,6 +57,10 @@ stericol_status stericol_working_levels_pair(stericol_session *session,
    S = 35 and 0 degC in situ.  Integrated over pressure. */
 stericol_status stericol_working_levels_single(stericol_session *session, const stericol_working_table *table,
                                                double latitude, stericol_working_levels *levels);
+/* How wide a gap is bridged below a sample at `depth`, all m: `asked`, or where that is NaN the default rule
+   of
+   --gap-reach, clamp(50 + 0.225 z, 50, 500). */
+double stericol_working_gap_reach(double asked, double depth);
 void stericol_working_levels_free(stericol_working_levels *levels);
 /* The standard ocean at a pressure, in the equation's own kinds. */
 void stericol_standard_ocean(const stericol_water *water, double pressure, double *salinity,

@@ -94,13 +94,16 @@ typedef struct follower {
     size_t next; /* the first row at or below the place asked for last */
 } follower;
 
+double stericol_working_gap_reach(double asked, double depth)
+{
+    return isnan(asked) ? fmin(fmax(50.0 + 0.225 * depth, 50.0), 500.0) : asked;
+}
+
 static bool is_bridged(const follower *f, size_t upper, size_t lower)
 {
     const double depth = f->table->depth[upper];
-    /* The rule of --gap-reach: clamp(50 + 0.225 z, 50, 500) m. */
-    const double reach = isnan(f->gap_reach) ? fmin(fmax(50.0 + 0.225 * depth, 50.0), 500.0) : f->gap_reach;
 
-    return f->table->depth[lower] - depth <= reach;
+    return f->table->depth[lower] - depth <= stericol_working_gap_reach(f->gap_reach, depth);
 }
 
 static void state_at(follower *f, double place, double *salinity, double *temperature)
