@@ -53,6 +53,7 @@ typedef struct side {
 
 /* What is the same for all of a piece. */
 typedef struct place {
+    const stericol_cf_loops *loops;
     const stericol_cf_rules *rules;
     const stericol_cf_conversion *conversion;
     stericol_cf_tally *tally;
@@ -66,10 +67,9 @@ static void unpack_run(const place *at, const char *raw, size_t count, double *v
 
     for (from = 0; from < count; from += part) {
         part = count - from < LONGEST_RUN ? count - from : LONGEST_RUN;
-        stericol_cf_unpack(at->rules, raw + from * at->rules->size, part, at->most, values + from,
-                           at->counts);
+        at->loops->unpack(at->rules, raw + from * at->rules->size, part, at->most, values + from, at->counts);
         if (at->conversion != NULL)
-            stericol_cf_convert(at->conversion, values + from, part, at->tally);
+            at->loops->convert(at->conversion, values + from, part, at->tally);
     }
 }
 
@@ -219,7 +219,8 @@ stericol_status stericol_cf_gather_values(stericol_context *context, stericol_cf
     const bool limited = conversion != NULL && (isfinite(conversion->low) || isfinite(conversion->high));
     stericol_cf_counts counts = {0};
     stericol_cf_blocks pieces;
-    place at = {.rules = rules,
+    place at = {.loops = stericol_cf_loops_named(NULL),
+                .rules = rules,
                 .conversion = conversion,
                 .tally = gather->tally,
                 .counts = &counts,

@@ -152,12 +152,23 @@ typedef struct stericol_cf_counts {
     unsigned long long inexact; /* whole numbers that a double cannot hold */
 } stericol_cf_counts;
 
-/* values[i] = the unpacked raw[i], NaN where missing by the rules or |unpacked| > most. */
+typedef struct stericol_cf_loops {
+    const char *name;
+    /* values[i] = the unpacked raw[i], NaN where missing by the rules or |unpacked| > most; adds to counts.
+     */
+    void (*unpack)(const stericol_cf_rules *rules, const void *raw, size_t count, double most, double *values,
+                   stericol_cf_counts *counts);
+    /* Applies `conversion` in place and adds to `tally` (NULL: not wanted). */
+    void (*convert)(const stericol_cf_conversion *conversion, double *values, size_t count,
+                    stericol_cf_tally *tally);
+} stericol_cf_loops;
+
+/* "plain", "avx2", "avx512": NULL when this processor has not got it; NULL: the fastest it has.  All give the
+ * same bits. */
+const stericol_cf_loops *stericol_cf_loops_named(const char *name);
+/* By the fastest loops. */
 void stericol_cf_unpack(const stericol_cf_rules *rules, const void *raw, size_t count, double most,
                         double *values, stericol_cf_counts *counts);
-/* Applies `conversion` in place and adds to `tally`. */
-void stericol_cf_convert(const stericol_cf_conversion *conversion, double *values, size_t count,
-                         stericol_cf_tally *tally);
 
 /* ---- blocks.c: a part of a variable in pieces that fit the memory and never cut a chunk ---- */
 

@@ -229,9 +229,9 @@ static void check_fields(const made_format *format, const encoding *how, const s
             assert_int_equal(variable->compressed, !format->zarr && (n % 2 == 0 || n % 4 == 1));
         }
         check_slab(&seen, field, member, 0, 0, LEVELS, 0, ROWS);
-        for (level = 0; level < LEVELS; level++)
+        for (level = n % 2; level < LEVELS; level += 2)
             check_slab(&seen, field, member, 1, level, 1, 0, ROWS);
-        for (turn = 0; turn < 6; turn++) {
+        for (turn = 0; turn < 3; turn++) {
             const unsigned level0 = draw(from, LEVELS), row0 = draw(from, ROWS);
 
             check_slab(&seen, field, member, draw(from, TIMES), level0, draw(from, LEVELS - level0 + 1), row0,

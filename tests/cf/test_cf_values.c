@@ -6,6 +6,8 @@
  */
 #include "made_files.h"
 
+#include "cf/room.h"
+
 #include <float.h>
 #include <math.h>
 #include <stdlib.h>
@@ -433,6 +435,72 @@ static void large_whole_numbers_are_told(void **state)
     check_variable(2, (double[]){NAN, 9007199254740992.0}, "");
 }
 
+/* All types, with limits, fills and values on every edge; each instruction set against the plain loops, bit
+ * by bit. */
+static void every_instruction_set_gives_the_same_bits(void **state)
+{
+    enum { COUNT = 531 };
+    static const char *const names[] = {"avx2", "avx512"};
+    const stericol_cf_conversion conversion = {1.0 / 3.0, -0.1, -300.0, 250.0};
+    _Alignas(8) unsigned char raw[COUNT * 8];
+    double plain[COUNT], other[COUNT];
+    draws from = {.state = 4711};
+    stericol_cf_type type;
+    size_t n, i, compared = 0;
+
+    (void)state;
+    for (type = STERICOL_CF_INT8; type <= STERICOL_CF_DOUBLE; type = (stericol_cf_type)(type + 1)) {
+        stericol_cf_rules rules = {
+            .type = type, .size = stericol_cf_size_of(type), .scale = 0.1, .offset = 7.7, .fills = 2};
+        const bool is_real = type >= STERICOL_CF_FLOAT, is_natural = !is_real && type % 2 == 1;
+
+        for (i = 0; i < sizeof raw; i++)
+            raw[i] = (unsigned char)draw(&from, 256);
+        if (is_real) {
+            rules.low.real = -1e30;
+            rules.high.real = 1e30;
+            rules.fill_low[0].real = -1.0;
+            rules.fill_high[0].real = 1.0;
+        } else if (is_natural) {
+            rules.low.natural = 3;
+            rules.high.natural = 250;
+            rules.fill_low[0].natural = rules.fill_high[0].natural = 77;
+        } else {
+            rules.low.whole = -100;
+            rules.high.whole = 120;
+            rules.fill_low[0].whole = rules.fill_high[0].whole = 77;
+        }
+        rules.fill_low[1] = rules.fill_high[1] = rules.low;
+        for (n = 0; n < sizeof names / sizeof names[0]; n++) {
+            const stericol_cf_loops *fast = stericol_cf_loops_named(names[n]),
+                                    *slow = stericol_cf_loops_named("plain");
+            stericol_cf_counts fast_counts = {0}, slow_counts = {0};
+            stericol_cf_tally fast_tally = {0}, slow_tally = {0};
+
+            if (fast == NULL)
+                continue; /* nothing to compare on this processor */
+            assert_string_equal(fast->name, names[n]);
+            slow->unpack(&rules, raw, COUNT, 20.0, plain, &slow_counts);
+            fast->unpack(&rules, raw, COUNT, 20.0, other, &fast_counts);
+            for (i = 0; i < COUNT; i++)
+                assert_true(isnan(plain[i]) ? isnan(other[i])
+                                            : memcmp(&plain[i], &other[i], sizeof plain[i]) == 0);
+            assert_int_equal(fast_counts.huge, slow_counts.huge);
+            assert_int_equal(fast_counts.inexact, slow_counts.inexact);
+            slow->convert(&conversion, plain, COUNT, &slow_tally);
+            fast->convert(&conversion, other, COUNT, &fast_tally);
+            for (i = 0; i < COUNT; i++)
+                assert_true(isnan(plain[i]) ? isnan(other[i])
+                                            : memcmp(&plain[i], &other[i], sizeof plain[i]) == 0);
+            assert_memory_equal(&fast_tally, &slow_tally, sizeof fast_tally);
+            compared++;
+        }
+    }
+    print_message("%zu pairs compared\n", compared);
+    assert_null(stericol_cf_loops_named("none"));
+    assert_non_null(stericol_cf_loops_named(NULL));
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
@@ -451,6 +519,7 @@ int main(void)
         cmocka_unit_test(limits_are_compared_in_the_type_of_the_values),
         cmocka_unit_test(bytes_may_be_unsigned),
         cmocka_unit_test(large_whole_numbers_are_told),
+        cmocka_unit_test(every_instruction_set_gives_the_same_bits),
     };
 
     return cmocka_run_group_tests_name("stored values", tests, NULL, NULL);
