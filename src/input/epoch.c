@@ -27,6 +27,7 @@ void stericol_epoch_close(stericol_epoch *epoch)
         free(epoch->states[i].items);
     free(epoch->members);
     free(epoch->description);
+    stericol_input_sums_free(&epoch->sums);
     stericol_input_thickness_close(epoch->thickness);
     stericol_input_terrain_close(epoch->terrain);
     stericol_input_grid_clear(&epoch->grid);

@@ -98,17 +98,9 @@ static stericol_status read_member(stericol_context *context, stericol_epoch *ep
 
 /* ---- the average ---- */
 
-typedef struct running_sums {
-    double *read;                 /* the member at hand */
-    double *total, *weight;       /* over the months done */
-    double *month, *month_weight; /* of the month at hand */
-    uint32_t *valid;              /* members that have a value */
-    double *rejected;             /* +-INFINITY where any was rejected, else 0 */
-} running_sums;
-
 enum { DOUBLE_ARRAYS = 6 };
 
-static void sums_free(running_sums *sums)
+void stericol_input_sums_free(stericol_input_sums *sums)
 {
     free(sums->read);
     free(sums->total);
@@ -117,10 +109,15 @@ static void sums_free(running_sums *sums)
     free(sums->month_weight);
     free(sums->valid);
     free(sums->rejected);
+    *sums = (stericol_input_sums){0};
 }
 
-static stericol_status sums_new(stericol_context *context, size_t points, running_sums *sums)
+/* Kept from call to call: fresh memory costs a page fault for every 4 KiB, as much as the average itself. */
+static stericol_status make_room(stericol_context *context, size_t points, stericol_input_sums *sums)
 {
+    if (sums->points == points)
+        return STERICOL_OK;
+    stericol_input_sums_free(sums);
     sums->read = stericol_new_array(points, sizeof(double));
     sums->total = stericol_new_array(points, sizeof(double));
     sums->weight = stericol_new_array(points, sizeof(double));
@@ -129,13 +126,16 @@ static stericol_status sums_new(stericol_context *context, size_t points, runnin
     sums->valid = stericol_new_array(points, sizeof(uint32_t));
     sums->rejected = stericol_new_array(points, sizeof(double));
     if (!sums->read || !sums->total || !sums->weight || !sums->month || !sums->month_weight || !sums->valid ||
-        !sums->rejected)
+        !sums->rejected) {
+        stericol_input_sums_free(sums);
         return stericol_fail_memory(context, points * (DOUBLE_ARRAYS * sizeof(double) + sizeof(uint32_t)),
                                     "the average of the epoch");
+    }
+    sums->points = points;
     return STERICOL_OK;
 }
 
-static void sums_clear(running_sums *sums, size_t points)
+static void sums_clear(stericol_input_sums *sums, size_t points)
 {
     memset(sums->total, 0, points * sizeof(double));
     memset(sums->weight, 0, points * sizeof(double));
@@ -145,7 +145,7 @@ static void sums_clear(running_sums *sums, size_t points)
     memset(sums->rejected, 0, points * sizeof(double));
 }
 
-static void add_member(running_sums *sums, size_t points, double length)
+static void add_member(stericol_input_sums *sums, size_t points, double length)
 {
     for (size_t i = 0; i < points; i++) {
         const double value = sums->read[i];
@@ -159,7 +159,7 @@ static void add_member(running_sums *sums, size_t points, double length)
     }
 }
 
-static void close_month(running_sums *sums, size_t points, double weight)
+static void close_month(stericol_input_sums *sums, size_t points, double weight)
 {
     for (size_t i = 0; i < points; i++) {
         if (sums->month_weight[i] > 0.0) {
@@ -170,7 +170,7 @@ static void close_month(running_sums *sums, size_t points, double weight)
     }
 }
 
-static void finish(const running_sums *sums, size_t points, double fewest, double *values)
+static void finish(const stericol_input_sums *sums, size_t points, double fewest, double *values)
 {
     for (size_t i = 0; i < points; i++) {
         if (sums->valid[i] > 0 && (double)sums->valid[i] >= fewest)
@@ -181,8 +181,8 @@ static void finish(const running_sums *sums, size_t points, double fewest, doubl
 }
 
 static stericol_status average(stericol_context *context, stericol_epoch *epoch,
-                               stericol_input_quantity quantity, const grid_box *box, running_sums *sums,
-                               double *values, stericol_epoch_tally *tally)
+                               stericol_input_quantity quantity, const grid_box *box,
+                               stericol_input_sums *sums, double *values, stericol_epoch_tally *tally)
 {
     /* So that a half of an even number of members is enough whatever the rounding. */
     static const double slack = 1e-9;
@@ -233,20 +233,18 @@ static stericol_status load(stericol_context *context, stericol_epoch *epoch,
                             double *salinity, stericol_epoch_tally *tally)
 {
     double *const values[STERICOL_INPUT_QUANTITIES] = {temperature, salinity};
-    running_sums sums = {0};
-    stericol_status status = one ? STERICOL_OK : sums_new(context, box->points, &sums);
+    stericol_status status = one ? STERICOL_OK : make_room(context, box->points, &epoch->sums);
     for (int i = 0; i < STERICOL_INPUT_QUANTITIES && status == STERICOL_OK; i++) {
         const stericol_input_quantity quantity = (stericol_input_quantity)i;
         if (!values[i])
             continue;
         assert(epoch->states[i].count);
         status = one ? read_member(context, epoch, one, quantity, box, values[i], tally)
-                     : average(context, epoch, quantity, box, &sums, values[i], tally);
+                     : average(context, epoch, quantity, box, &epoch->sums, values[i], tally);
         blank_dry(epoch, box, values[i]);
     }
     if (status == STERICOL_OK)
         count_zeros(box, temperature, salinity, tally);
-    sums_free(&sums);
     return status;
 }
 

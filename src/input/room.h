@@ -302,6 +302,18 @@ stericol_status stericol_input_judge(stericol_context *context, stericol_epoch *
                                      stericol_input_quantity quantity, const stericol_input_slab *slab,
                                      const double *values, size_t count, const stericol_cf_tally *tally);
 
+/* ---- load.c: the running arrays of an average ---- */
+
+typedef struct stericol_input_sums {
+    size_t points;
+    double *read;                 /* the member at hand */
+    double *total, *weight;       /* over the months done */
+    double *month, *month_weight; /* of the month at hand */
+    uint32_t *valid;              /* members that have a value */
+    double *rejected;             /* +-INFINITY where any was rejected, else 0 */
+} stericol_input_sums;
+void stericol_input_sums_free(stericol_input_sums *sums);
+
 /* ---- epoch.c ---- */
 
 struct stericol_epoch {
@@ -318,6 +330,7 @@ struct stericol_epoch {
     stericol_input_sayings sayings;
     stericol_input_thickness *thickness;
     stericol_input_terrain *terrain;
+    stericol_input_sums sums;
     char *description;
     bool has_dates;
     char first_date[STERICOL_CF_DATE_ROOM], last_date[STERICOL_CF_DATE_ROOM];
