@@ -282,7 +282,7 @@ stericol_status stericol_inspect_open(stericol_session *session, const stericol_
         if (status != STERICOL_OK)
             return stericol_inspect_refuse(session, inspection, status);
     }
-    stericol_setup_request(session->settings, "file", &part, &request);
+    stericol_setup_request(session->settings, "field", &part, &request);
     inspection->kind_given[STERICOL_INSPECT_TEMPERATURE] =
         request.temperature_kind != STERICOL_TEMPERATURE_UNKNOWN;
     inspection->kind_given[STERICOL_INSPECT_SALINITY] = request.salinity_kind != STERICOL_SALINITY_UNKNOWN;

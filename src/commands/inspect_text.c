@@ -433,7 +433,7 @@ static void add_values(const stericol_inspection *inspection, stericol_text *tex
                              stericol_epoch_description(inspection->epoch));
     else if (count > 1)
         stericol_text_format(&words,
-                             "Values of %s, the first of %zu times (others: --file-time, --file-step)",
+                             "Values of %s, the first of %zu times (others: --field-time, --field-step)",
                              values->first, count);
     else
         stericol_text_format(&words, "Values (%s)", values->first);

@@ -371,8 +371,8 @@ stericol_status stericol_inspect_look(stericol_session *session, stericol_inspec
         return STERICOL_OK;
     look.grid = stericol_epoch_grid(inspection->epoch);
     look.cells = look.grid->rows * look.grid->columns;
-    look.averaged = stericol_settings_is_set(session->settings, "file-time") ||
-                    stericol_settings_is_set(session->settings, "file-step");
+    look.averaged = stericol_settings_is_set(session->settings, "field-time") ||
+                    stericol_settings_is_set(session->settings, "field-step");
     look.member = first_member(inspection->epoch);
     plan(&look, stericol_session_memory(session) / MEMORY_PART);
     status = looking_new(&look);

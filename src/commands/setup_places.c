@@ -2,6 +2,7 @@
 #include "commands/setup_inside.h"
 
 #include "base/checked.h"
+#include "base/text.h"
 #include "input/field2d.h"
 
 #include <math.h>
@@ -136,8 +137,13 @@ static stericol_status add_mask(stericol_session *session, stericol_setup *setup
 {
     const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
     stericol_input_mask mask = {0};
-    stericol_status status = stericol_input_mask_read(session->context, path, grid, &mask);
+    stericol_status status;
 
+    if (stericol_ends_with(path, ".geojson") || stericol_ends_with(path, ".json"))
+        return stericol_fail(session->context, STERICOL_INPUT, path, "--regions",
+                             "give a NetCDF mask with flag_values and flag_meanings, or boxes by --region",
+                             "holds polygons, which this version does not read");
+    status = stericol_input_mask_read(session->context, path, grid, &mask);
     if (status == STERICOL_OK)
         status = stericol_regions_add_labels(session->context, setup->regions, mask.count,
                                              (const char *const *)mask.names, grid->rows, grid->columns,

@@ -43,7 +43,8 @@ static const stericol_option earlier_time = {
     .kind = STERICOL_OPTION_WINDOW,
     .initial_words = "all times",
     .group = epochs,
-    .help = "Times of the earlier epoch, ISO 8601 to any precision, both ends included: 2005-01..2009-12"};
+    .help = "Times of the earlier epoch, ISO 8601 to any precision, both ends included: 2005-01..2009-12; "
+            "one date alone is both ends"};
 static const stericol_option later_time = {.name = "later-time",
                                            .metavar = "FROM..TO",
                                            .kind = STERICOL_OPTION_WINDOW,
@@ -91,13 +92,13 @@ static const stericol_option field = {.name = "field",
                                       .help = "The field that is changed: a NetCDF file, a quoted pattern "
                                               "such as 'sea_*.nc', or @list.txt with a path a "
                                               "line"};
-static const stericol_option field_time = {
-    .name = "field-time",
-    .metavar = "FROM..TO",
-    .kind = STERICOL_OPTION_WINDOW,
-    .initial_words = "all times",
-    .group = field_heading,
-    .help = "Times of the field, ISO 8601 to any precision, both ends included: 2005-01..2009-12"};
+static const stericol_option field_time = {.name = "field-time",
+                                           .metavar = "FROM..TO",
+                                           .kind = STERICOL_OPTION_WINDOW,
+                                           .initial_words = "all times",
+                                           .group = field_heading,
+                                           .help = "Times of the field, ISO 8601 to any precision, both ends "
+                                                   "included: 2005-01..2009-12; one date alone is both ends"};
 static const stericol_option field_step = {
     .name = "field-step",
     .metavar = "A..B",
@@ -192,16 +193,16 @@ static const stericol_option files = {
     .help =
         "What to look at: NetCDF files, quoted patterns such as 'sea_*.nc', or @list.txt with a path a line"};
 
-static const stericol_option file_time = {
-    .name = "file-time",
+static const stericol_option field_time_of_inspect = {
+    .name = "field-time",
     .metavar = "FROM..TO",
     .kind = STERICOL_OPTION_WINDOW,
     .initial_words = "all times, of which the first alone is looked at closely",
     .group = input_heading,
     .help = "Times to look at, averaged as an epoch is, ISO 8601 to any precision, both ends included: "
-            "2005-01..2009-12"};
-static const stericol_option file_step = {
-    .name = "file-step",
+            "2005-01..2009-12; one date alone is both ends"};
+static const stericol_option field_step_of_inspect = {
+    .name = "field-step",
     .metavar = "A..B",
     .kind = STERICOL_OPTION_STEPS,
     .group = input_heading,
@@ -642,14 +643,28 @@ static const stericol_example change_examples[] = {
 
 /* ---- inspect ---- */
 
-static const stericol_option *const inspect_options[] = {
-    &file_time,         &file_step,        &temperature,   &salinity,  &temperature_kind, &salinity_kind,
-    &temperature_scale, &vertical_unit,    &select_member, &cell_area, &thickness,        &mask,
-    &coordinates,       &table_of_inspect, &memory,        &settings,  &progress,         &quiet,
-    &log_file};
+static const stericol_option *const inspect_options[] = {&field_time_of_inspect,
+                                                         &field_step_of_inspect,
+                                                         &temperature,
+                                                         &salinity,
+                                                         &temperature_kind,
+                                                         &salinity_kind,
+                                                         &temperature_scale,
+                                                         &vertical_unit,
+                                                         &select_member,
+                                                         &cell_area,
+                                                         &thickness,
+                                                         &mask,
+                                                         &coordinates,
+                                                         &table_of_inspect,
+                                                         &memory,
+                                                         &settings,
+                                                         &progress,
+                                                         &quiet,
+                                                         &log_file};
 static const stericol_rule inspect_rules[] = {
     {STERICOL_RULE_REQUIRED, "file", NULL, NULL, "name the file to look at"},
-    {STERICOL_RULE_EXCLUDES, "file-time", "file-step", NULL, choose_one},
+    {STERICOL_RULE_EXCLUDES, "field-time", "field-step", NULL, choose_one},
     RUNNING_RULES};
 static const stericol_example inspect_examples[] = {
     {"What a file holds and how it would be read", "stericol inspect kolva_1998.nc"},

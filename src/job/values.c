@@ -221,6 +221,11 @@ const char *stericol_parse_window(const char *text, size_t *from_length, const c
 {
     const char *dots = strstr(text, "..");
 
+    if (dots == NULL && text[0] != '\0') { /* one date stands for both ends */
+        *from_length = strlen(text);
+        *to = text;
+        return NULL;
+    }
     if (dots == NULL || dots == text || dots[2] == '\0' || dots[2] == '.' || strstr(dots + 2, "..") != NULL)
         return "a window is FROM..TO in ISO 8601, such as 2005-01..2009-12";
     *from_length = (size_t)(dots - text);

@@ -38,7 +38,7 @@ const char *stericol_parse_assignment(const char *text, size_t *name_length, siz
  */
 const char *stericol_parse_box(const char *text, size_t *name_length, double box[4]);
 
-/* "FROM..TO", neither empty: the length of FROM and the start of TO. */
+/* "FROM..TO", neither empty: the length of FROM and the start of TO; one date alone is both. */
 const char *stericol_parse_window(const char *text, size_t *from_length, const char **to);
 
 #endif

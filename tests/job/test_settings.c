@@ -243,8 +243,8 @@ static void wrong_values_are_refused(void **state)
                    "be greater than its first");
     assert_refused("change --later-step 0",
                    "--later-step: '0' cannot be used; steps are counted from 1, such as 3 or 3..5");
-    assert_refused("change --later-time 2005",
-                   "--later-time: '2005' cannot be used; a window is FROM..TO in ISO 8601, "
+    assert_refused("change --later-time 2005..",
+                   "--later-time: '2005..' cannot be used; a window is FROM..TO in ISO 8601, "
                    "such as 2005-01..2009-12");
     assert_refused("change --select member",
                    "--select: 'member' cannot be used; it is NAME=INDEX, the index counted from "

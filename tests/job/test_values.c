@@ -189,7 +189,7 @@ static void assignments_and_boxes_are_read(void **state)
 
 static void windows_are_read(void **state)
 {
-    static const char *const bad[] = {"2005", "..2005", "2005..", "2005...2006", "1..2..3", ""};
+    static const char *const bad[] = {"..2005", "2005..", "2005...2006", "1..2..3", ""};
     size_t length;
     const char *to;
 
@@ -197,6 +197,9 @@ static void windows_are_read(void **state)
     assert_null(stericol_parse_window("2005-01..2009-12", &length, &to));
     assert_int_equal(length, 7);
     assert_string_equal(to, "2009-12");
+    assert_null(stericol_parse_window("2005-03", &length, &to)); /* one date is both ends */
+    assert_int_equal(length, 7);
+    assert_string_equal(to, "2005-03");
     for (size_t i = 0; i < sizeof bad / sizeof bad[0]; i++)
         assert_phrase(bad[i], stericol_parse_window(bad[i], &length, &to),
                       "a window is FROM..TO in ISO 8601, such as 2005-01..2009-12");
