@@ -422,7 +422,8 @@ static void the_text_is_narrow_and_plain(void **state)
     assert_holds(result.output,
                  "temperature   warmth, recognised by standard_name: potential (as the file says)");
     assert_holds(result.output, "--vertical auto means linear");
-    assert_holds(result.output, "Values of 2031-01, the first of 2 times (others: --file-time, --file-step)");
+    assert_holds(result.output,
+                 "Values of 2031-01, the first of 2 times (others: --field-time, --field-step)");
     assert_holds(result.output, "\n       5.00   90.0   20.000  22.750  25.500 ");
     assert_holds(result.output,
                  "72 of 80 cells hold a column (90.0 % at the surface): 9 end above the deepest level");
@@ -506,11 +507,11 @@ static void times_are_described_and_averaged(void **state)
     assert_true(lists(at(whole, "files.0.suggestions"), "option", "--earlier-time"));
     /* January (31 days) and March (31 days) with February (28) between: (0*31 + 1*28 + 2*31)/90 = 1 above
      * January. */
-    window = document(path, "--file-time 2031-01..2031-03", 0);
+    window = document(path, "--field-time 2031-01..2031-03", 0);
     assert_same_number(number_at(window, "files.0.values.times"), 3);
     /* The mean of 72 values that are rounded once each: a few parts in 1e15 of 20. */
     assert_close(number_at(window, "files.0.values.levels.0.temperature.mean"), 23.75, 1e-13);
-    steps = document(path, "--file-step 2", 0);
+    steps = document(path, "--field-step 2", 0);
     assert_plain_values(steps, 1.0);
     json_decref(whole);
     json_decref(window);
@@ -522,17 +523,17 @@ static void windows_can_be_empty_or_wrong(void **state)
     const recipe how = {.times = 2, .months = {1, 2}};
     const char *path = make("windows.nc", &how);
     char line[LINE_ROOM];
-    json_t *whole = document(path, "--file-time 2040..2041", 3);
+    json_t *whole = document(path, "--field-time 2040..2041", 3);
     run_result result;
 
     (void)state;
-    assert_refused_once(whole, "no time lies in --file-time 2040..2041");
+    assert_refused_once(whole, "no time lies in --field-time 2040..2041");
     json_decref(whole);
-    snprintf(line, sizeof line, "%s --file-time 2031-13..2032", path);
+    snprintf(line, sizeof line, "%s --field-time 2031-13..2032", path);
     result = inspect(line);
     assert_exit(&result, 2);
     run_free(&result);
-    snprintf(line, sizeof line, "%s --file-time 2031..2032 --file-step 1", path);
+    snprintf(line, sizeof line, "%s --field-time 2031..2032 --field-step 1", path);
     result = inspect(line);
     assert_exit(&result, 2);
     run_free(&result);
