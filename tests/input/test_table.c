@@ -94,8 +94,7 @@ static void test_marks_and_line_ends(void **state)
         "a\tb\tc\n0\t20.5\t35\n10\t\t35.25\n",
         "a b c\n0 20.5 35\n10 na 35.25\n",
         "  a   b\t c  \n\n 0  20.5   35  \n\n  10   nan 35.25 \n",
-        "\xEF\xBB\xBF"
-        "a,b,c\n0,20.5,35\n10,NA,35.25",
+        "\xEF\xBB\xBF\x61,b,c\n0,20.5,35\n10,NA,35.25", /* the byte order mark; \x61 is a */
         "# a survey\na,b,c\n  # of levels, in metres\n0,20.5,35\n#\n10,NA,35.25\n",
         "a , \"b\" , c\n\"0\" ,20.5, \"35\" \n 10,\"\", 3.525e1\n",
         "a;b;c\n0;20,5;35\n10;;35,25\n",
