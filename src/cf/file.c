@@ -54,11 +54,20 @@ static const char *format_of(int handle, stericol_cf_storage storage)
     }
 }
 
+/* A file that was looked at before and has not changed since is trusted. */
+static bool is_known(const stericol_cf_location *location, const stericol_cf_identity *known)
+{
+    return known != NULL && known->bytes == location->bytes && known->changed == location->changed;
+}
+
 static stericol_status check_before_open(stericol_context *context, const char *path,
-                                         const stericol_cf_location *location)
+                                         const stericol_cf_location *location,
+                                         const stericol_cf_identity *known)
 {
     stericol_status status = STERICOL_OK;
 
+    if (is_known(location, known))
+        return STERICOL_OK;
     if (location->storage == STERICOL_CF_STORAGE_CLASSIC)
         status = stericol_cf_check_classic(context, path, location->local);
     else if (location->storage == STERICOL_CF_STORAGE_HDF5)
@@ -93,6 +102,12 @@ static stericol_status open_located(stericol_context *context, const stericol_cf
 
 stericol_status stericol_cf_open(stericol_context *context, const char *path, stericol_cf_file **file)
 {
+    return stericol_cf_open_again(context, path, NULL, file);
+}
+
+stericol_status stericol_cf_open_again(stericol_context *context, const char *path,
+                                       const stericol_cf_identity *known, stericol_cf_file **file)
+{
     stericol_cf_location location;
     stericol_cf_file *opened = NULL;
     stericol_status status;
@@ -101,7 +116,7 @@ stericol_status stericol_cf_open(stericol_context *context, const char *path, st
     status = stericol_cf_locate(context, path, &location);
     if (status != STERICOL_OK)
         return status;
-    status = check_before_open(context, path, &location);
+    status = check_before_open(context, path, &location, known);
     if (status != STERICOL_OK)
         goto done;
     opened = calloc(1, sizeof *opened);
