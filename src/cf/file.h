@@ -73,6 +73,20 @@ typedef struct stericol_cf_file stericol_cf_file;
 stericol_status stericol_cf_open(stericol_context *context, const char *path, stericol_cf_file **file);
 void stericol_cf_close(stericol_cf_file *file);
 
+/* Size and time of change, as provenance wants them; read when the file was opened. */
+typedef struct stericol_cf_identity {
+    unsigned long long bytes; /* 0 for a Zarr store, which is a folder */
+    long long changed;        /* seconds since 1970-01-01 UTC */
+    const char *id;           /* global attribute id, tracking_id or uuid; NULL where there is none */
+} stericol_cf_identity;
+
+/*
+ * Opens a file again that was open in this run: without a new child process where size and time of change are
+ * those of `known` (NULL: as stericol_cf_open()).
+ */
+stericol_status stericol_cf_open_again(stericol_context *context, const char *path,
+                                       const stericol_cf_identity *known, stericol_cf_file **file);
+
 const char *stericol_cf_path(const stericol_cf_file *file);
 /* "classic", "64-bit offset", "64-bit data", "NetCDF-4", "Zarr" */
 const char *stericol_cf_format(const stericol_cf_file *file);
@@ -121,12 +135,7 @@ stericol_status stericol_cf_read_texts(stericol_context *context, stericol_cf_fi
                                        const stericol_cf_variable *variable, char ***texts, size_t *count);
 void stericol_cf_free_texts(char **texts, size_t count);
 
-/* Size and time of change, as provenance wants them; read when the file was opened. */
-typedef struct stericol_cf_identity {
-    unsigned long long bytes; /* 0 for a Zarr store, which is a folder */
-    long long changed;        /* seconds since 1970-01-01 UTC */
-    const char *id;           /* global attribute id, tracking_id or uuid; NULL where there is none */
-} stericol_cf_identity;
+/* Read when the file was opened; `id` lives as long as the file. */
 stericol_cf_identity stericol_cf_identity_of(const stericol_cf_file *file);
 
 #endif

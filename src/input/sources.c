@@ -42,7 +42,9 @@ stericol_status stericol_input_source_file(stericol_context *context, stericol_e
     if (source->file)
         return STERICOL_OK;
     close_oldest(epoch);
-    const stericol_status status = stericol_cf_open(context, source->path, &source->file);
+    const stericol_cf_identity before = {.bytes = source->bytes, .changed = source->changed};
+    const stericol_status status =
+        stericol_cf_open_again(context, source->path, source->changed ? &before : NULL, &source->file);
     if (status != STERICOL_OK)
         return status;
     const stericol_cf_identity identity = stericol_cf_identity_of(source->file);
