@@ -6,7 +6,9 @@ build, against every #include of ours, and, for system headers, against what the
 on: a header that reaches a room through another room's header counts as well.
 """
 
+import concurrent.futures
 import json
+import os
 import pathlib
 import re
 import shlex
@@ -116,13 +118,14 @@ def dependencies(command, folder):
 
 def check_system(top, build, report):
     seen = {pattern: set() for pattern in SYSTEM}
-    for entry in json.loads((build / "compile_commands.json").read_text()):
+    entries = [entry for entry in json.loads((build / "compile_commands.json").read_text())
+               if top / "src" in pathlib.Path(entry["file"]).resolve().parents]
+    with concurrent.futures.ThreadPoolExecutor(os.cpu_count()) as pool:
+        depends = list(pool.map(lambda entry: dependencies(entry["command"], entry["directory"]), entries))
+    for entry, found in zip(entries, depends):
         path = pathlib.Path(entry["file"]).resolve()
-        if top / "src" not in path.parents:
-            continue
         room = path.relative_to(top / "src").parts[0]
         report.looked += 1
-        found = dependencies(entry["command"], entry["directory"])
         for pattern, rooms in SYSTEM.items():
             for header in found:
                 if re.search(pattern, header):

@@ -15,11 +15,11 @@ NOT_OURS = re.compile(r"^(?:__|_init$|_fini$|_edata$|_end$|_Z|gcov)")
 
 
 def defined(arguments):
-    """Names of the symbols that nm calls defined and global."""
-    made = subprocess.run(["nm", "--defined-only", "--extern-only", "--format=posix"] + arguments, capture_output=True,
-                          text=True, check=True).stdout
-    names = {line.split()[0] for line in made.split("\n") if len(line.split()) >= 2}
-    return {name for name in names if not NOT_OURS.match(name)}
+    """(file, name) of the symbols that nm calls defined and global."""
+    made = subprocess.run(["nm", "--defined-only", "--extern-only", "--format=posix", "--print-file-name"] + arguments,
+                          capture_output=True, text=True, check=True).stdout
+    found = re.findall(r"^(.*): (\S+) [A-Za-z] ", made, re.MULTILINE)
+    return {(path, name) for path, name in found if not NOT_OURS.match(name)}
 
 
 def promised(top):
@@ -34,16 +34,15 @@ def promised(top):
 def main():
     top, shared, static = source.top_of(sys.argv), sys.argv[2], sys.argv[3]
     report = source.Report()
-    exported, promises = defined(["--dynamic", shared]), promised(top)
+    exported, promises = {name for _, name in defined(["--dynamic", shared])}, promised(top)
     for name in sorted(exported - promises):
         report.say(shared, f"exports {name}, which no public header promises")
     for name in sorted(promises - exported):
         report.say(shared, f"does not export {name}, which a public header promises")
-    for path in [static] + sys.argv[4:]:
-        for name in sorted(defined([path])):
-            report.looked += 1
-            if not name.startswith("stericol_"):
-                report.say(path, f"defines {name} without the prefix")
+    for path, name in sorted(defined([static] + sys.argv[4:])):
+        report.looked += 1
+        if not name.startswith("stericol_"):
+            report.say(path, f"defines {name} without the prefix")
     if not promises:
         report.say("include", "promises nothing: the check sees nothing")
     report.end("symbols")
