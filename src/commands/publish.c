@@ -77,7 +77,7 @@ double stericol_publish_value(const stericol_pair_outcome *outcome, double ocean
 static stericol_status choose_regions(stericol_session *session, const stericol_setup *setup, size_t *chosen,
                                       size_t *count)
 {
-    size_t columns = setup->cells.columns;
+    size_t columns = setup->cells.cells.columns;
     double *fraction = stericol_new_doubles(columns);
 
     if (fraction == NULL)
@@ -86,7 +86,7 @@ static stericol_status choose_regions(stericol_session *session, const stericol_
     for (size_t r = 0; r < stericol_regions_count(setup->regions); r++) {
         bool touched = false;
 
-        for (size_t row = 0; row < setup->cells.rows && !touched; row++) {
+        for (size_t row = 0; row < setup->cells.cells.rows && !touched; row++) {
             stericol_regions_row(setup->regions, r, row, fraction);
             for (size_t i = 0; i < columns && !touched; i++)
                 touched = fraction[i] > 0.0 && setup->cell_area[row * columns + i] > 0.0;
@@ -132,7 +132,7 @@ static stericol_status write_regions(stericol_session *session, stericol_publica
 static stericol_status write_areas(stericol_session *session, const stericol_setup *setup,
                                    stericol_result *result)
 {
-    return stericol_result_cell_area(session->context, result, 0, setup->cells.rows, setup->cell_area);
+    return stericol_result_cell_area(session->context, result, 0, setup->cells.cells.rows, setup->cell_area);
 }
 
 /* An output that is one of the inputs would be replaced by what was made from it. */
@@ -168,9 +168,9 @@ static void describe_layout(stericol_session *session, const stericol_setup *set
         .latitude = grid->latitude,
         .longitude = grid->longitude,
         .latitude_bounds = grid->curvilinear ? (curvilinear_bounds ? grid->latitude_bounds : NULL)
-                                             : setup->cells.latitude_bounds,
+                                             : setup->cells.cells.latitude_bounds,
         .longitude_bounds = grid->curvilinear ? (curvilinear_bounds ? grid->longitude_bounds : NULL)
-                                              : setup->cells.longitude_bounds,
+                                              : setup->cells.cells.longitude_bounds,
         .corners = grid->corners,
         .layers = setup->pair.column.layer_count,
         .layer_bounds = (const double(*)[2])publication->layer_bounds,

@@ -444,8 +444,7 @@ void stericol_setup_free(stericol_setup *setup)
     stericol_regions_free(setup->regions);
     free(setup->layers);
     free(setup->sea_floor);
-    free(setup->latitude_bounds);
-    free(setup->longitude_bounds);
+    stericol_grid_cells_free(&setup->cells);
     free(setup->cell_area);
     free(setup->profile);
     *setup = (stericol_setup){0};

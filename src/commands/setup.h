@@ -3,6 +3,7 @@
 #ifndef STERICOL_COMMANDS_SETUP_H
 #define STERICOL_COMMANDS_SETUP_H
 
+#include "commands/cells.h"
 #include "commands/pair.h"
 #include "commands/session.h"
 
@@ -18,9 +19,7 @@ typedef struct stericol_setup {
     stericol_epoch *anomaly;    /* --salinity-anomaly, else NULL */
     stericol_regrid_field *background_field, *anomaly_field;
     double *sea_floor;
-    stericol_cells cells;
-    double *latitude_bounds, *longitude_bounds; /* made where the file has none */
-    bool bounds_made;
+    stericol_grid_cells cells;
     double *cell_area; /* [rows][columns], 0 where a cell is met twice */
     const char *cell_area_source;
     size_t repeated;
