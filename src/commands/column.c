@@ -146,7 +146,7 @@ stericol_status stericol_command_column(stericol_session *session)
         status = stericol_setup_column(session->context, settings, &water, &layers, &options);
     if (status == STERICOL_OK) {
         if (!isnan(sea_floor) && !stericol_settings_is_set(settings, "bottom-reach"))
-            options.bottom_reach = 500.0; /* m; as with bathymetry in the other commands */
+            options.bottom_reach = STERICOL_SETUP_BOTTOM_REACH;
         status = read_levels(session, single, &water, latitude, options.gap_reach, &levels);
     }
     if (status == STERICOL_OK)

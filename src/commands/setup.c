@@ -92,7 +92,7 @@ stericol_status stericol_setup_column(stericol_context *context, const stericol_
     if (has_option(settings, "bottom-reach") && stericol_settings_is_set(settings, "bottom-reach"))
         options->bottom_reach = stericol_settings_number(settings, "bottom-reach");
     else if (text_or_null(settings, "bathymetry") != NULL)
-        options->bottom_reach = 500.0; /* m; interface: the default with bathymetry */
+        options->bottom_reach = STERICOL_SETUP_BOTTOM_REACH;
     return status;
 }
 

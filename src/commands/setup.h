@@ -9,6 +9,9 @@
 
 #include "job/paths.h"
 
+/* How far the deepest sample is carried towards a known sea floor, m, where --bottom-reach is not given. */
+#define STERICOL_SETUP_BOTTOM_REACH 500.0
+
 /* Everything that a pair borrows, and what provenance tells of it. */
 typedef struct stericol_setup {
     stericol_water water;

@@ -90,13 +90,34 @@ static stericol_status add_regions(stericol_session *session, stericol_setup *se
     return status;
 }
 
+/* Terrain-following levels end at the sea floor, which the file itself tells. */
+static stericol_status take_own_floor(stericol_session *session, stericol_setup *setup)
+{
+    const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
+
+    if (!grid->own_depths)
+        return STERICOL_OK;
+    setup->sea_floor = stericol_new_doubles(grid->rows * grid->columns);
+    if (setup->sea_floor == NULL)
+        return stericol_fail_memory(session->context, 0, "the sea floor");
+    if (!stericol_epoch_sea_floor(setup->epochs[0], setup->sea_floor)) {
+        free(setup->sea_floor);
+        setup->sea_floor = NULL;
+    } else if (!stericol_settings_is_set(session->settings, "bottom-reach")) {
+        setup->pair.column.bottom_reach = STERICOL_SETUP_BOTTOM_REACH;
+    }
+    return STERICOL_OK;
+}
+
 stericol_status stericol_setup_places(stericol_session *session, stericol_setup *setup)
 {
     const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
     const char *bathymetry = stericol_settings_text(session->settings, "bathymetry");
     stericol_status status = STERICOL_OK;
 
-    if (bathymetry != NULL)
+    if (bathymetry == NULL)
+        status = take_own_floor(session, setup);
+    else
         status =
             stericol_input_bathymetry(session->context, session->units, bathymetry, grid, &setup->sea_floor);
     if (status == STERICOL_OK)
@@ -110,7 +131,7 @@ stericol_status stericol_setup_places(stericol_session *session, stericol_setup 
     setup->pair.sea_floor = setup->sea_floor;
     setup->pair.regions = setup->regions;
     setup->pair.cell_area = setup->cell_area;
-    setup->pair.area_from_floor = setup->sea_floor != NULL;
-    setup->pair.area_from_mask = setup->sea_floor == NULL && grid->dry != NULL;
+    setup->pair.area_from_floor = bathymetry != NULL;
+    setup->pair.area_from_mask = bathymetry == NULL && grid->dry != NULL;
     return status;
 }

@@ -162,4 +162,10 @@ stericol_status stericol_epoch_load_depths(stericol_context *context, stericol_e
                                            size_t levels, size_t row0, size_t rows, double *depth,
                                            double *upper, double *lower);
 
+/*
+ * Terrain-following grids: the depth of the sea floor below the surface that formula_terms give, m,
+ * [rows][columns]; <= 0 or NaN on land.  False, and nothing written, on other grids.
+ */
+bool stericol_epoch_sea_floor(const stericol_epoch *epoch, double *floor);
+
 #endif

@@ -288,6 +288,14 @@ stericol_status stericol_epoch_load_depths(stericol_context *context, stericol_e
                                        lower);
 }
 
+bool stericol_epoch_sea_floor(const stericol_epoch *epoch, double *floor)
+{
+    if (!epoch->terrain)
+        return false;
+    stericol_input_terrain_floor(epoch->terrain, epoch->grid.rows * epoch->grid.columns, floor);
+    return true;
+}
+
 size_t stericol_epoch_bytes(const stericol_epoch *epoch, size_t levels, size_t rows)
 {
     size_t points = 0, bytes = 0;

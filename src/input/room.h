@@ -287,6 +287,9 @@ stericol_status stericol_input_terrain_load(stericol_context *context, const ste
                                             size_t level0, size_t levels, size_t row0, size_t rows,
                                             double *depth, double *upper, double *lower);
 
+/* Depth of the sea floor below the surface, m, [rows][columns]. */
+void stericol_input_terrain_floor(const stericol_input_terrain *terrain, size_t points, double *floor);
+
 /* ---- judge.c: can the values be what they are called? ---- */
 
 /*

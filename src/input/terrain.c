@@ -305,3 +305,9 @@ stericol_status stericol_input_terrain_load(stericol_context *context, const ste
     }
     return STERICOL_OK;
 }
+
+void stericol_input_terrain_floor(const stericol_input_terrain *terrain, size_t points, double *floor)
+{
+    for (size_t i = 0; i < points; i++)
+        floor[i] = terrain->depth[i] + (terrain->surface ? terrain->surface[i] : 0.0);
+}
