@@ -68,7 +68,7 @@ typedef struct stericol_cf_file stericol_cf_file;
  * reads its whole header.  The first contact happens in a child process with limits on time and memory, so
  * that a damaged file that crashes, hangs or swells the NetCDF library is refused instead. STERICOL_INPUT
  * with a message when the file is absent, a folder that is no store, empty, not NetCDF, truncated or damaged;
- * STERICOL_MEMORY.  *file is NULL on failure.
+ * STERICOL_MEMORY; STERICOL_INTERRUPTED when a signal ends the child.  *file is NULL on failure.
  */
 stericol_status stericol_cf_open(stericol_context *context, const char *path, stericol_cf_file **file);
 void stericol_cf_close(stericol_cf_file *file);

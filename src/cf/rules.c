@@ -359,6 +359,92 @@ static void add_default_fill(const stericol_cf_variable *variable, stericol_cf_r
         (void)add_fill(rules, stored, stored);
 }
 
+/* A stored value of `type` at `bytes` as a number. */
+static stericol_cf_number number_at(stericol_cf_type type, const void *bytes)
+{
+    stericol_cf_number number = {.sort = stericol_cf_sort_of(type)};
+
+#define READ_AS(TYPE, KIND)                                                                                  \
+    do {                                                                                                     \
+        TYPE stored_;                                                                                        \
+        memcpy(&stored_, bytes, sizeof stored_);                                                             \
+        number.value.KIND = stored_;                                                                         \
+    } while (0)
+    switch (type) {
+    case STERICOL_CF_INT8:
+        READ_AS(int8_t, whole);
+        break;
+    case STERICOL_CF_UINT8:
+        READ_AS(uint8_t, natural);
+        break;
+    case STERICOL_CF_INT16:
+        READ_AS(int16_t, whole);
+        break;
+    case STERICOL_CF_UINT16:
+        READ_AS(uint16_t, natural);
+        break;
+    case STERICOL_CF_INT32:
+        READ_AS(int32_t, whole);
+        break;
+    case STERICOL_CF_UINT32:
+        READ_AS(uint32_t, natural);
+        break;
+    case STERICOL_CF_INT64:
+        READ_AS(int64_t, whole);
+        break;
+    case STERICOL_CF_UINT64:
+        READ_AS(uint64_t, natural);
+        break;
+    case STERICOL_CF_FLOAT: {
+        float stored;
+
+        memcpy(&stored, bytes, sizeof stored);
+        number.value.real = (double)stored;
+        break;
+    }
+    default:
+        READ_AS(double, real);
+        break;
+    }
+#undef READ_AS
+    return number;
+}
+
+/*
+ * A Zarr array has its fill_value in its own header, and writers that know no NetCDF leave it at that.  Zero
+ * is left out: it is what some of them put there unasked, and a zero is a longitude or a temperature like any
+ * other.
+ */
+static void add_store_fill(stericol_context *context, const stericol_cf_file *file,
+                           const stericol_cf_variable *variable, stericol_cf_rules *rules)
+{
+    static const signed char byte_fill = NC_FILL_BYTE;
+    static const unsigned char natural_fill = NC_FILL_UBYTE;
+    unsigned char bytes[8] = {0};
+    stericol_cf_number number;
+    stericol_cf_stored stored;
+    int absent = 0;
+
+    if (strcmp(file->format, "Zarr") != 0 ||
+        nc_inq_var_fill(variable->group_handle, variable->handle, &absent, bytes) != NC_NOERR || absent != 0)
+        return;
+    if ((variable->type == STERICOL_CF_INT8 && memcmp(bytes, &byte_fill, 1) == 0) ||
+        (variable->type == STERICOL_CF_UINT8 && memcmp(bytes, &natural_fill, 1) == 0))
+        return; /* NetCDF's own, which means nothing for bytes */
+    number = number_at(variable->type, bytes);
+    if ((number.sort == STERICOL_CF_REAL && !(fabs(number.value.real) > 0.0)) ||
+        (number.sort != STERICOL_CF_REAL && number.value.natural == 0) ||
+        !stericol_cf_fit_number(rules->type, variable->type, &number, &stored))
+        return;
+    if (rules->fills > 0 && memcmp(&rules->fill_low[0], &stored, sizeof stored) == 0)
+        return; /* the default */
+    if (number.sort == STERICOL_CF_REAL && fabs(number.value.real / NC_FILL_DOUBLE - 1.0) < 1e-5)
+        return; /* the default, as short decimals in the store's header */
+    if (add_fill(rules, stored, stored))
+        stericol_notice(context, STERICOL_NOTE, file->path, variable->name,
+                        "the fill_value of its Zarr array is taken as missing");
+}
+
 static stericol_status make_rules(stericol_context *context, const stericol_cf_file *file,
                                   const stericol_cf_variable *variable, stericol_cf_rules *rules)
 {
@@ -374,8 +460,10 @@ static stericol_status make_rules(stericol_context *context, const stericol_cf_f
         status = read_packing(context, file, variable, "add_offset", &rules->offset);
     if (status != STERICOL_OK)
         return status;
-    if (stericol_cf_attribute_of(variable, "_FillValue") == NULL)
+    if (stericol_cf_attribute_of(variable, "_FillValue") == NULL) {
         add_default_fill(variable, rules);
+        add_store_fill(context, file, variable, rules);
+    }
     add_fills(context, file, variable, "_FillValue", rules);
     add_fills(context, file, variable, "missing_value", rules);
     return stericol_cf_set_limits(context, file, variable, rules);

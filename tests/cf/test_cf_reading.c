@@ -137,6 +137,46 @@ static void a_store_is_opened_by_its_url_too(void **state)
     check_plain(&made_formats[4], made_path("a store"));
 }
 
+/* A store without NetCDF's additions, written by hand after the Zarr storage specification, version 2. */
+static void a_plain_zarr_store_is_read(void **state)
+{
+    static const char array[] =
+        "{\"zarr_format\": 2, \"shape\": [3], \"chunks\": [2], \"dtype\": \"<i2\", "
+        "\"compressor\": null, \"fill_value\": -5, \"order\": \"C\", \"filters\": null}";
+    static const char attributes[] = "{\"_ARRAY_DIMENSIONS\": [\"depth\"], \"units\": \"m\"}";
+    const unsigned char first[4] = {1, 0, 0x2c, 1}; /* 1, 300; the second chunk is absent: fill */
+    double values[3];
+    const stericol_cf_variable *depth;
+    stericol_cf_file *file;
+    watched seen;
+
+    (void)state;
+    made_remove_folder(made_path("plain zarr"));
+    assert_int_equal(mkdir(made_path("plain zarr"), 0700), 0);
+    assert_int_equal(mkdir(made_path("plain zarr/depth"), 0700), 0);
+    made_bytes("plain zarr/.zgroup", "{\"zarr_format\": 2}", 18);
+    made_bytes("plain zarr/depth/.zarray", array, sizeof array - 1);
+    made_bytes("plain zarr/depth/.zattrs", attributes, sizeof attributes - 1);
+    made_bytes("plain zarr/depth/0", first, sizeof first);
+    watch(&seen);
+    file = open_well(&seen, made_path("plain zarr"));
+    depth = stericol_cf_find(file, "depth", NULL);
+    assert_non_null(depth);
+    assert_int_equal(depth->type, STERICOL_CF_INT16);
+    assert_string_equal(stericol_cf_text_of(depth, "units"), "m");
+    assert_int_equal(depth->chunked, true);
+    assert_int_equal(depth->chunk[0], 2);
+    assert_string_equal(stericol_cf_dimension_at(file, depth->dimension[0])->name, "depth");
+    assert_int_equal(stericol_cf_read(seen.context, file, depth, NULL, NULL, values), STERICOL_OK);
+    assert_same_number(values[0], 1.0);
+    assert_same_number(values[1], 300.0);
+    assert_nan(values[2]);
+    assert_non_null(strstr(stericol_text_string(&seen.notices),
+                           "plain zarr: depth: the fill_value of its Zarr array is taken as missing\n"));
+    stericol_cf_close(file);
+    unwatch(&seen);
+}
+
 static void a_path_below_here_needs_no_slash(void **state)
 {
     (void)state;
@@ -436,6 +476,7 @@ int main(void)
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(every_format_gives_the_same_records),
         cmocka_unit_test(a_store_is_opened_by_its_url_too),
+        cmocka_unit_test(a_plain_zarr_store_is_read),
         cmocka_unit_test(a_path_below_here_needs_no_slash),
         cmocka_unit_test(groups_are_searched_upwards),
         cmocka_unit_test(one_file_is_opened_twice),
