@@ -430,6 +430,39 @@ static stericol_status gather(stericol_pair_work *work, stericol_pair_outcome *o
     return STERICOL_OK;
 }
 
+/* No column was used: because a field holds nothing at all, or else because nothing fits together. */
+static stericol_status refuse_nothing(const stericol_pair_work *work)
+{
+    stericol_epoch_variable last = {0};
+
+    for (size_t e = 0; e < work->epoch_count; e++) {
+        const stericol_pair_epoch *source = &work->pair->epochs[e];
+        bool has_salinity = source->salinity_source == STERICOL_SALINITY_FROM_FILE;
+        unsigned long long held[2] = {0, 0};
+
+        last = stericol_epoch_temperature(source->epoch);
+        for (size_t k = 0; k < work->level_count; k++) {
+            const stericol_epoch_tally *tally = &work->tally[e][k];
+
+            held[0] += tally->temperature.values - tally->temperature.missing;
+            held[1] += tally->salinity.values - tally->salinity.missing;
+        }
+        for (int field = 0; field < (has_salinity ? 2 : 1); field++) {
+            stericol_epoch_variable empty = field == 0 ? last : stericol_epoch_salinity(source->epoch);
+
+            if (held[field] == 0)
+                return stericol_fail(work->context, STERICOL_NOTHING, empty.file, empty.name,
+                                     "choose other times, other layers or another file",
+                                     "every value is missing");
+        }
+    }
+    return stericol_fail(
+        work->context, STERICOL_NOTHING, last.file, last.name,
+        "compare what the files hold with stericol inspect, and look at the layers and times",
+        work->epoch_count > 1 ? "no column could be used: no depth asked for has values in both epochs"
+                              : "no column could be used: no depth asked for has values");
+}
+
 stericol_status stericol_pair_run(stericol_context *context, stericol_executor *executor,
                                   const stericol_pair *pair, stericol_result *result,
                                   const stericol_change_layout *layout, stericol_pair_tick *tick, void *user,
@@ -451,6 +484,7 @@ stericol_status stericol_pair_run(stericol_context *context, stericol_executor *
     status = work_new(&work);
     if (status == STERICOL_OK)
         status = stericol_pair_plan_make(&work, &work.plan);
+    outcome->plan = work.plan;
     for (size_t i = 0; i < 2 && status == STERICOL_OK; i++)
         status = stericol_pair_slab_new(&work, &slabs[i]);
     if (status == STERICOL_OK)
@@ -462,10 +496,7 @@ stericol_status stericol_pair_run(stericol_context *context, stericol_executor *
     if (status == STERICOL_OK)
         status = gather(&work, outcome);
     if (status == STERICOL_OK && outcome->used == 0)
-        status = stericol_fail(
-            context, STERICOL_NOTHING, NULL, NULL,
-            "see the flags that inspect shows, the layers and the windows",
-            "no column could be used: nothing is common to both states down to the limits asked");
+        status = refuse_nothing(&work);
     for (size_t i = 0; i < 2; i++)
         stericol_pair_slab_free(&slabs[i]);
     work_free(&work);

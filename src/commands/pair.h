@@ -75,7 +75,15 @@ typedef struct stericol_pair_sums {
     size_t incomplete;                                            /* columns with data that were left out */
 } stericol_pair_sums;
 
+/* How the grid was cut; the result does not depend on it. */
+typedef struct stericol_pair_plan {
+    size_t rows;       /* of a tile */
+    size_t levels;     /* of a slab */
+    double inflations; /* how often a chunk is inflated at most; 1 unless the memory is short */
+} stericol_pair_plan;
+
 typedef struct stericol_pair_outcome {
+    stericol_pair_plan plan;
     size_t regions, layers;
     double *region_area;                 /* [regions] m2 */
     stericol_pair_sums *sums;            /* [regions][layers + 1] */

@@ -11,11 +11,6 @@ typedef struct stericol_pair_counters {
     char apart[120];
 } stericol_pair_counters;
 
-typedef struct stericol_pair_plan {
-    size_t rows;   /* of a tile */
-    size_t levels; /* of a slab */
-} stericol_pair_plan;
-
 /* One run over the whole grid. */
 typedef struct stericol_pair_work {
     stericol_context *context;

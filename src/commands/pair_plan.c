@@ -99,7 +99,7 @@ stericol_status stericol_pair_plan_make(stericol_pair_work *work, stericol_pair_
     size_t stride_levels, stride_rows;
 
     wanted_strides(work, &stride_levels, &stride_rows);
-    *plan = (stericol_pair_plan){stride_rows, stride_levels};
+    *plan = (stericol_pair_plan){.rows = stride_rows, .levels = stride_levels, .inflations = 1.0};
     while (plan_bytes(work, plan->rows, plan->levels) > budget && plan->levels > 1)
         plan->levels = (plan->levels + 1) / 2;
     while (plan_bytes(work, plan->rows, plan->levels) > budget && plan->rows > 1)
@@ -109,19 +109,9 @@ stericol_status stericol_pair_plan_make(stericol_pair_work *work, stericol_pair_
                              "the smallest tile takes %.0f MiB, and --memory leaves %.0f MiB",
                              ceil(plan_bytes(work, plan->rows, plan->levels) / 1048576.0),
                              budget / 1048576.0);
-    if (plan->rows == stride_rows && plan->levels == stride_levels) {
+    plan->inflations =
+        ceil((double)stride_levels / (double)plan->levels) * ceil((double)stride_rows / (double)plan->rows);
+    if (plan->rows == stride_rows && plan->levels == stride_levels)
         widen(work, stride_levels, stride_rows, budget, plan);
-    } else {
-        double again = ceil((double)stride_levels / (double)plan->levels) *
-                       ceil((double)stride_rows / (double)plan->rows);
-
-        stericol_notice(
-            work->context, STERICOL_WARNING, NULL, NULL,
-            "the memory allowed is smaller than the files' chunks want: chunks may be inflated up to %.0f "
-            "times; a larger --memory is faster",
-            again);
-    }
-    stericol_notice(work->context, STERICOL_NOTE, NULL, NULL,
-                    "cut into tiles of %zu rows and slabs of %zu levels", plan->rows, plan->levels);
     return STERICOL_OK;
 }

@@ -72,12 +72,29 @@ static void warn_of_values(stericol_session *session, const stericol_publication
             session, "some levels hold single zeros that are water: everything was read a second time");
 }
 
+/* For the log; only what the user can do something about is said aloud. */
+static void tell_plan(stericol_session *session, const stericol_pair_plan *plan)
+{
+    stericol_log_write(session->log, STERICOL_LOG_INFO, "plan", "how the grid was cut",
+                       (stericol_log_field[]){stericol_log_whole("tile_rows", (long long)plan->rows),
+                                              stericol_log_whole("slab_levels", (long long)plan->levels),
+                                              stericol_log_number("inflations", plan->inflations)},
+                       3);
+    if (plan->inflations > 1.0)
+        stericol_session_say(
+            session,
+            "the memory allowed is less than the files' chunks want: chunks were inflated up to "
+            "%.0f times; a larger --memory is faster",
+            plan->inflations);
+}
+
 void stericol_publish_warnings(stericol_session *session, const stericol_publication *publication)
 {
     const stericol_pair_outcome *outcome = &publication->outcome;
     size_t layers = outcome->layers;
     bool differ = false;
 
+    tell_plan(session, &outcome->plan);
     warn_of_values(session, publication);
     warn_of_ends(session, publication);
     for (size_t r = 0; r < publication->region_count; r++) {
