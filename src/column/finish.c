@@ -5,6 +5,8 @@
 #include <assert.h>
 #include <string.h>
 
+enum { BLOCK = 32 }; /* columns whose planes are fetched together */
+
 /* design.md, section 2: below this share of what was turned over, warming and cooling cancel. */
 static const double least_share_of_heat = 0.3;
 
@@ -195,6 +197,18 @@ static void find_reached(stericol_sweep *sweep, size_t from, size_t count)
     }
 }
 
+/*
+ * Asks for the lines of all planes that a block of columns will need: there are more planes than streams that
+ * the hardware follows, and column after column would wait for each.
+ */
+static void fetch_block(const stericol_sweep *sweep, size_t from, size_t to)
+{
+    enum { LINE = 64 / sizeof(double) };
+    for (size_t plane = 0; plane < sweep->sizes.planes; plane++)
+        for (size_t column = from; column < to; column += LINE)
+            __builtin_prefetch(&stericol_plane(sweep, plane)[column], 1);
+}
+
 stericol_status stericol_sweep_finish(stericol_sweep *sweep, size_t from, size_t to)
 {
     assert(from <= to && to <= sweep->count);
@@ -204,6 +218,8 @@ stericol_status stericol_sweep_finish(stericol_sweep *sweep, size_t from, size_t
         find_reached(sweep, from, count);
         stericol_carry_down(sweep, from, count);
         for (size_t column = from; column < from + count; column++) {
+            if ((column - from) % BLOCK == 0)
+                fetch_block(sweep, column, column + BLOCK < from + count ? column + BLOCK : from + count);
             if (sweep->samples != NULL) {
                 const stericol_status status = stericol_integrate_profile(sweep, column);
                 if (status != STERICOL_OK)

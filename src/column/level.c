@@ -184,41 +184,38 @@ static void judge_event(strip *s, size_t i)
     }
 }
 
-/* `value` is 0 or NaN; a comparison of bits costs less than one of numbers and cannot be guessed wrong. */
-static unsigned is_zero(double value)
+static double standing_of(unsigned phase)
 {
-    uint64_t bits;
-    memcpy(&bits, &value, sizeof bits);
-    return bits == 0;
+    const unsigned out = STERICOL_PHASE_GAP | STERICOL_PHASE_FLOOR | STERICOL_PHASE_HOLE;
+    if ((phase & STERICOL_PHASE_STARTED) == 0 || (phase & out) != 0)
+        return STERICOL_STANDING_OUT;
+    return (phase & ~(unsigned)STERICOL_PHASE_AVERAGED) == STERICOL_PHASE_STARTED
+               ? STERICOL_STANDING_UNDER_WAY
+               : STERICOL_STANDING_SPECIAL;
 }
 
 /*
- * Settles for every column whether the level counts.  In nearly all nothing changes: a column that is under
- * way has one more sample, or land and what lies below an end has one more level without any.  Only the
- * others are looked at one by one.
+ * Settles for every column whether the level counts.  In nearly all nothing changes (see count_events in
+ * loops.h), so most strips need no second look.  find_use() has marked the columns that go on; what is
+ * decided here overrides it.
  */
 static void judge(strip *s)
 {
-    const uint16_t *phases = s->sweep->phase + s->from;
-    const unsigned below_end = STERICOL_PHASE_GAP | STERICOL_PHASE_FLOOR | STERICOL_PHASE_HOLE;
-    const unsigned always = s->sweep->options.cast || s->record->last ? 1 : 0;
-    unsigned short event[STERICOL_STRIP];
-    size_t events = 0, quietly_used = 0;
-    for (size_t i = 0; i < s->count; i++) {
-        const unsigned phase = phases[i];
-        const unsigned one = is_zero(s->earlier[i]), two = is_zero(s->later[i]),
-                       sound = is_zero(s->unsound[i]);
-        const unsigned goes_on = one & two & sound & (always ^ 1u) &
-                                 ((phase & ~(unsigned)STERICOL_PHASE_AVERAGED) == STERICOL_PHASE_STARTED);
-        const unsigned stays_out =
-            ((one | two) ^ 1u) & (((phase & STERICOL_PHASE_STARTED) == 0) | ((phase & below_end) != 0));
-        event[events] = (unsigned short)i;
-        events += (goes_on | stays_out) ^ 1u;
-        quietly_used += goes_on;
+    const bool always = s->sweep->options.cast || s->record->last;
+    double *standing = stericol_standing(s->sweep) + s->from;
+    double steady;
+    const double events =
+        s->loops->count_events(s->count, standing, s->earlier, s->later, s->unsound, always, &steady);
+    s->any_used = steady > 0.0;
+    for (size_t i = 0; events > 0.0 && i < s->count; i++) {
+        const bool one = s->earlier[i] <= 0.0, two = s->later[i] <= 0.0, sound = s->unsound[i] <= 0.0;
+        const bool goes_on = one && two && sound && !always && standing[i] <= STERICOL_STANDING_UNDER_WAY;
+        const bool stays_out = !one && !two && fabs(standing[i] - STERICOL_STANDING_OUT) <= 0.0;
+        if (!goes_on && !stays_out) {
+            judge_event(s, i);
+            standing[i] = standing_of(s->sweep->phase[s->from + i]);
+        }
     }
-    s->any_used = quietly_used > 0;
-    for (size_t k = 0; k < events; k++)
-        judge_event(s, event[k]);
 }
 
 /* The starting columns' water at the surface (cells: in the middle between the surface and the first cell).
@@ -348,9 +345,12 @@ static void keep_samples(strip *s)
 static void end_at_floor(strip *s, const double *end)
 {
     const double *floor = s->sweep->floor + s->from;
-    uint16_t *phase = s->sweep->phase + s->from;
-    for (size_t i = 0; i < s->count; i++)
-        phase[i] = (uint16_t)(phase[i] | (s->use[i] > 0.0 && end[i] >= floor[i] ? STERICOL_PHASE_FLOOR : 0));
+    for (size_t i = 0; i < s->count; i++) {
+        if (s->use[i] > 0.0 && end[i] >= floor[i]) {
+            s->sweep->phase[s->from + i] |= STERICOL_PHASE_FLOOR;
+            stericol_standing(s->sweep)[s->from + i] = STERICOL_STANDING_OUT;
+        }
+    }
 }
 
 /* What the next level needs. */

@@ -9,7 +9,9 @@
 #ifndef STERICOL_COLUMN_LOOPS_H
 #define STERICOL_COLUMN_LOOPS_H
 
+#include <stdbool.h>
 #include <stddef.h>
+#include <stdint.h>
 
 /* What is integrated over the coordinate. */
 enum {
@@ -22,6 +24,24 @@ enum {
 };
 /* Sums are the integrals of the parts, and of the absolute value of the heat part. */
 enum { STERICOL_SUM_TURNOVER = STERICOL_PARTS, STERICOL_SUMS };
+
+/* What is remembered of a column from level to level; bits of `phase`. */
+enum {
+    STERICOL_PHASE_STARTED = 1,
+    STERICOL_PHASE_GAP = 2,       /* ended by a gap */
+    STERICOL_PHASE_FLOOR = 4,     /* ended at the sea floor that was given */
+    STERICOL_PHASE_HOLE = 8,      /* no common values since the last sample */
+    STERICOL_PHASE_REJECTED = 16, /* the level right below the last sample was rejected */
+    STERICOL_PHASE_AXIS_END = 32, /* the last sample is the axis' last level */
+    STERICOL_PHASE_EARLIER_DEEPER = 64,
+    STERICOL_PHASE_LATER_DEEPER = 128,
+    STERICOL_PHASE_AVERAGED = 256 /* integrands were given, not evaluated */
+};
+
+/* How a column stands before a level; the phase in short. */
+#define STERICOL_STANDING_UNDER_WAY 0.0 /* started, and nothing else to say */
+#define STERICOL_STANDING_OUT 1.0       /* not started, ended, or in a hole */
+#define STERICOL_STANDING_SPECIAL 2.0   /* anything else */
 
 /*
  * A piece of coordinate in each column of a strip: lo..hi (nothing where hi <= lo or use is 0) of the
@@ -61,6 +81,13 @@ typedef struct stericol_loops {
     /* unsound: 0 where all parts are finite, else NaN; use: 1 where it and both masks are 0, else 0. */
     void (*find_use)(size_t count, const double *const part[STERICOL_PARTS], const double *earlier,
                      const double *later, double *unsound, double *use);
+    /*
+     * In how many columns something changes with this level, given how they stand: not where one that is
+     * under way has one more sample (*steady counts those; none when `always`), nor where one that is out has
+     * one more level without values.
+     */
+    double (*count_events)(size_t count, const double *standing, const double *earlier, const double *later,
+                           const double *unsound, bool always, double *steady);
     /* mean = (a + b)/2 */
     void (*average)(size_t count, const double *a, const double *b, double *mean);
     /* mass = 2/(a + b) */

@@ -45,6 +45,26 @@ static void find_use(size_t count, const double *const part[STERICOL_PARTS], con
     }
 }
 
+static double count_events(size_t count, const double *standing, const double *earlier, const double *later,
+                           const double *unsound, bool always, double *steady)
+{
+    const double welcome = always ? 0.0 : 1.0;
+    double quiet = 0.0, going = 0.0;
+#pragma omp simd reduction(+ : quiet, going)
+    for (size_t i = 0; i < count; i++) {
+        const double one = earlier[i], two = later[i], state = standing[i], wild = unsound[i];
+        const double under_way = state <= STERICOL_STANDING_UNDER_WAY ? welcome : 0.0;
+        const double out = fabs(state - STERICOL_STANDING_OUT) <= 0.0 ? 1.0 : 0.0;
+        const double goes_on = one + two + wild <= 0.0 ? under_way : 0.0;
+        const double without_first = one <= 0.0 ? 0.0 : out;
+        const double stays_out = two <= 0.0 ? 0.0 : without_first;
+        quiet += goes_on + stays_out;
+        going += goes_on;
+    }
+    *steady = going;
+    return (double)count - quiet;
+}
+
 static void average(size_t count, const double *a, const double *b, double *mean)
 {
 #pragma omp simd
@@ -98,8 +118,10 @@ static void find_extent(size_t count, const stericol_piece *piece, double *lowes
     double least = (double)INFINITY, most = -(double)INFINITY;
 #pragma omp simd reduction(min : least) reduction(max : most)
     for (size_t i = 0; i < count; i++) {
-        const double from = use[i] > 0.0 && hi[i] > lo[i] ? lo[i] : (double)INFINITY;
-        const double to = use[i] > 0.0 && hi[i] > lo[i] ? hi[i] : -(double)INFINITY;
+        const double first = lo[i], last = hi[i];
+        const double width = use[i] > 0.0 ? last - first : 0.0;
+        const double from = width > 0.0 ? first : (double)INFINITY;
+        const double to = width > 0.0 ? last : -(double)INFINITY;
         least = from < least ? from : least;
         most = to > most ? to : most;
     }
@@ -114,13 +136,18 @@ static void cut(size_t count, const stericol_piece *piece, const double *above, 
     const double *upper = piece->upper, *lower = piece->lower;
 #pragma omp simd
     for (size_t i = 0; i < count; i++) {
-        const double lo = from[i] > above[i] ? from[i] : above[i];
-        const double hi = to[i] < below[i] ? to[i] : below[i];
-        const double span = lower[i] - upper[i];
-        const double way = (0.5 * (lo + hi) - upper[i]) / span;
+        /* Everything is loaded before it is chosen from, or the compiler would branch on the loads. */
+        const double first = from[i], last = to[i], from_here = above[i], to_there = below[i];
+        const double start = upper[i], end = lower[i], used = use[i];
+        const double lo = first > from_here ? first : from_here;
+        const double hi = last < to_there ? last : to_there;
+        const double span = end - start;
+        const double way = (0.5 * (lo + hi) - start) / span;
         const double some = span > 0.0 ? way : 0.0;
-        width[i] = use[i] > 0.0 && hi > lo ? hi - lo : 0.0;
-        share[i] = lo <= upper[i] && hi >= lower[i] ? 0.5 : some;
+        const double wide = hi > lo ? hi - lo : 0.0;
+        const double outside = lo <= start ? hi : -(double)INFINITY;
+        width[i] = used > 0.0 ? wide : 0.0;
+        share[i] = outside >= end ? 0.5 : some;
     }
 }
 
@@ -163,5 +190,16 @@ static void replace(size_t count, const double *use, const double *values, doubl
 
 extern const stericol_loops STERICOL_LOOPS;
 const stericol_loops STERICOL_LOOPS = {
-    STERICOL_LOOPS_NAME, find_valid,  find_use, average, inverse_average, mean_difference,
-    find_parts,          find_extent, cut,      add,     replace};
+    .name = STERICOL_LOOPS_NAME,
+    .find_valid = find_valid,
+    .find_use = find_use,
+    .count_events = count_events,
+    .average = average,
+    .inverse_average = inverse_average,
+    .mean_difference = mean_difference,
+    .find_parts = find_parts,
+    .find_extent = find_extent,
+    .cut = cut,
+    .add = add,
+    .replace = replace,
+};

@@ -1,5 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Making, freeing and asking a sweep. */
+/* For madvise(), which POSIX has only without huge pages. */
+#define _DEFAULT_SOURCE
 #include "column/sweep.h"
 
 #include "base/checked.h"
@@ -8,6 +10,7 @@
 #include <assert.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/mman.h>
 
 static bool is_spline(const stericol_column_options *options)
 {
@@ -22,25 +25,43 @@ static bool add_room(size_t *bytes, size_t a, size_t b, size_t size)
            stericol_add_sizes(*bytes, room, bytes);
 }
 
+/*
+ * Planes are walked side by side.  A distance near a multiple of 4 KiB would put all of them into the same
+ * few sets of the first-level cache; nine lines more than a multiple spread them over all 64.
+ */
+static bool find_stride(size_t count, size_t *stride)
+{
+    enum { PAGE = 4096 / sizeof(double), SHIFT = 9 * 64 / sizeof(double) };
+    *stride = count;
+    if (count < PAGE)
+        return true;
+    return stericol_add_sizes(count, PAGE - 1 + SHIFT, stride) &&
+           (*stride = count + (PAGE - count % PAGE) % PAGE + SHIFT) > 0;
+}
+
 static bool find_sizes(const stericol_column_options *options, const stericol_cuts *cuts, size_t count,
                        size_t row_length, bool with_sea_floor, stericol_sizes *sizes)
 {
     const size_t rows = count / row_length;
     *sizes = (stericol_sizes){.bytes = sizeof(stericol_sweep)};
     sizes->carries = options->cast || (with_sea_floor && options->bottom_reach > 0.0);
-    size_t state = cuts->segment_count * STERICOL_SUMS + STERICOL_PARTS + 2;
+    size_t state = cuts->segment_count * STERICOL_SUMS + STERICOL_PARTS + 3;
     if (sizes->carries)
         state += 4;
     sizes->result_planes = STERICOL_COLUMN_QUANTITIES * (cuts->layer_count + (cuts->layer_count > 1 ? 1 : 0));
     sizes->planes = state > sizes->result_planes ? state : sizes->result_planes;
     size_t *bytes = &sizes->bytes;
-    bool counted = add_room(bytes, sizes->planes + 1 + (with_sea_floor ? 1 : 0), count, sizeof(double)) &&
+    bool counted = find_stride(count, &sizes->stride) &&
+                   add_room(bytes, sizes->planes, sizes->stride, sizeof(double)) &&
+                   add_room(bytes, with_sea_floor ? 2 : 1, count, sizeof(double)) &&
                    add_room(bytes, count, 1, sizeof(uint16_t) + sizeof(signed char) + cuts->layer_count) &&
                    add_room(bytes, rows, 1, sizeof(double));
     if (options->coordinate == STERICOL_COORDINATE_PRESSURE) {
         sizes->limits = cuts->limit_count * rows;
         counted = counted && add_room(bytes, cuts->limit_count + 2, rows, sizeof(double));
     }
+    if (options->coordinate == STERICOL_COORDINATE_DEPTH && row_length == 1)
+        counted = counted && add_room(bytes, rows, 1, sizeof(double));
     if (is_spline(options)) {
         size_t each;
         counted = counted && stericol_multiply_sizes(options->levels, 5, &each) &&
@@ -88,12 +109,34 @@ size_t stericol_strip_length(const stericol_sweep *sweep, size_t from, size_t to
     return length;
 }
 
+/*
+ * Room for the planes, all zero.  Large ones ask for huge pages: the planes are many and each is entered anew
+ * with every strip, so that with small pages the translation of addresses and the first touch of each page
+ * cost more than the sums themselves.
+ */
+static double *take_planes(const stericol_sizes *sizes)
+{
+    const size_t huge = (size_t)2 << 20;
+    const size_t bytes = sizes->planes * sizes->stride * sizeof(double);
+    if (bytes < 4 * huge)
+        return stericol_new_array(sizes->planes * sizes->stride, sizeof(double));
+    const size_t rounded = bytes / huge * huge + (bytes % huge > 0 ? huge : 0);
+    void *planes = rounded < bytes ? NULL : aligned_alloc(huge, rounded);
+    if (planes == NULL)
+        return NULL;
+#ifdef MADV_HUGEPAGE
+    /* Only a wish: without huge pages it is slower, not wrong. */
+    (void)madvise(planes, rounded, MADV_HUGEPAGE);
+#endif
+    return memset(planes, 0, bytes);
+}
+
 static bool take_room(stericol_sweep *sweep, bool with_sea_floor)
 {
     const stericol_sizes *sizes = &sweep->sizes;
     const size_t count = sweep->count;
     const bool pressure = sweep->options.coordinate == STERICOL_COORDINATE_PRESSURE;
-    sweep->planes = stericol_new_array(sizes->planes * count, sizeof(double));
+    sweep->planes = take_planes(sizes);
     sweep->reached = stericol_new_array(count, sizeof(double));
     sweep->phase = stericol_new_array(count, sizeof *sweep->phase);
     sweep->flags = stericol_new_array(count, sizeof *sweep->flags);
@@ -104,6 +147,10 @@ static bool take_room(stericol_sweep *sweep, bool with_sea_floor)
     if (with_sea_floor) {
         sweep->floor = stericol_new_array(count, sizeof(double));
         taken = taken && sweep->floor != NULL;
+    }
+    if (!pressure && sweep->row_length == 1) {
+        sweep->gravity = stericol_new_array(sweep->rows, sizeof(double));
+        taken = taken && sweep->gravity != NULL;
     }
     if (pressure) {
         sweep->scale = stericol_new_array(sweep->rows, sizeof(double));
@@ -122,9 +169,14 @@ static bool take_room(stericol_sweep *sweep, bool with_sea_floor)
 static void fill_arrays(stericol_sweep *sweep, const double *latitude, const double *sea_floor)
 {
     double *place = stericol_place(sweep);
-    for (size_t i = 0; i < sweep->count; i++)
+    double *standing = stericol_standing(sweep);
+    for (size_t i = 0; i < sweep->count; i++) {
         place[i] = -(double)INFINITY;
+        standing[i] = STERICOL_STANDING_OUT;
+    }
     memcpy(sweep->latitude, latitude, sweep->rows * sizeof *latitude);
+    for (size_t row = 0; sweep->gravity != NULL && row < sweep->rows; row++)
+        sweep->gravity[row] = stericol_gravity(latitude[row], 0.0);
     for (size_t row = 0; sweep->scale != NULL && row < sweep->rows; row++) {
         sweep->scale[row] = STERICOL_PASCALS_PER_DECIBAR / stericol_gravity(latitude[row], 0.0);
         sweep->reach[row] = stericol_coordinate_at(sweep, sweep->options.surface_reach, row);
@@ -181,6 +233,7 @@ void stericol_sweep_free(stericol_sweep *sweep)
     if (sweep == NULL)
         return;
     free(sweep->latitude);
+    free(sweep->gravity);
     free(sweep->scale);
     free(sweep->limits);
     free(sweep->reach);

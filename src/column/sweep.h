@@ -25,19 +25,6 @@ enum {
     STERICOL_MOST_SEGMENTS = 2 * STERICOL_MOST_LAYERS - 1
 };
 
-/* What is remembered of a column from level to level; bits of `phase`. */
-enum {
-    STERICOL_PHASE_STARTED = 1,
-    STERICOL_PHASE_GAP = 2,       /* ended by a gap */
-    STERICOL_PHASE_FLOOR = 4,     /* ended at the sea floor that was given */
-    STERICOL_PHASE_HOLE = 8,      /* no common values since the last sample */
-    STERICOL_PHASE_REJECTED = 16, /* the level right below the last sample was rejected */
-    STERICOL_PHASE_AXIS_END = 32, /* the last sample is the axis' last level */
-    STERICOL_PHASE_EARLIER_DEEPER = 64,
-    STERICOL_PHASE_LATER_DEEPER = 128,
-    STERICOL_PHASE_AVERAGED = 256 /* integrands were given, not evaluated */
-};
-
 typedef struct stericol_segment {
     size_t upper; /* numbers of limits */
     size_t lower;
@@ -63,6 +50,7 @@ typedef struct stericol_cuts {
 
 /* How much room a sweep takes; counts of doubles unless said. */
 typedef struct stericol_sizes {
+    size_t stride; /* from plane to plane, >= count: see find_stride() */
     size_t planes; /* arrays [count] for the state, later for the results */
     size_t result_planes;
     bool carries;   /* the deepest states are kept to be carried down */
@@ -80,6 +68,7 @@ struct stericol_sweep {
     size_t count;
     size_t row_length;
     size_t rows;
+    double *gravity;  /* [rows], m/s2 at the surface; depth coordinate with rows of one column only */
     double *latitude; /* [rows] */
     double *scale;    /* [rows], 1e4/g, Pa per dbar over gravity; pressure coordinate only */
     double *limits;   /* [limit][rows], dbar; pressure coordinate only */
@@ -99,7 +88,7 @@ struct stericol_sweep {
 /* The planes of the state. */
 static inline double *stericol_plane(const stericol_sweep *sweep, size_t plane)
 {
-    return sweep->planes + plane * sweep->count;
+    return sweep->planes + plane * sweep->sizes.stride;
 }
 static inline double *stericol_sum_plane(const stericol_sweep *sweep, size_t segment, size_t sum)
 {
@@ -120,10 +109,15 @@ static inline double *stericol_top(const stericol_sweep *sweep)
 {
     return stericol_last_part(sweep, STERICOL_PARTS + 1);
 }
+/* How the column stands, STERICOL_STANDING_... */
+static inline double *stericol_standing(const stericol_sweep *sweep)
+{
+    return stericol_last_part(sweep, STERICOL_PARTS + 2);
+}
 /* Last states: 0, 1 salinity and 2, 3 temperature of the earlier and later epoch; only when sizes.carries. */
 static inline double *stericol_last_state(const stericol_sweep *sweep, size_t which)
 {
-    return stericol_last_part(sweep, STERICOL_PARTS + 2 + which);
+    return stericol_last_part(sweep, STERICOL_PARTS + 3 + which);
 }
 
 static inline size_t stericol_row_of(const stericol_sweep *sweep, size_t column)
