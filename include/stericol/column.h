@@ -106,7 +106,7 @@ typedef struct stericol_layer {
 
 /** What is done; start from stericol_column_options_default(). */
 typedef struct stericol_column_options {
-    const stericol_water *water;      /**< must outlive the sweep; no default */
+    const stericol_water *water;      /**< copied; no default */
     stericol_attribution attribution; /**< default symmetric */
     stericol_vertical vertical;       /**< default linear */
     stericol_coordinate coordinate;   /**< default depth */

@@ -112,21 +112,42 @@ static void find_parts(size_t count, const stericol_part_sources *sources, doubl
         heat[i] = capacity[i] * (t2[i] - t1[i]) * mass[i];
 }
 
+enum { LANES = 8 };
+
+INLINE void widen_extent(size_t lanes, const double *use, const double *lo, const double *hi,
+                         double least[LANES], double most[LANES])
+{
+#pragma omp simd
+    for (size_t lane = 0; lane < lanes; lane++) {
+        const double first = lo[lane], last = hi[lane];
+        const double width = use[lane] > 0.0 ? last - first : 0.0;
+        const double from = width > 0.0 ? first : (double)INFINITY;
+        const double to = width > 0.0 ? last : -(double)INFINITY;
+        least[lane] = from < least[lane] ? from : least[lane];
+        most[lane] = to > most[lane] ? to : most[lane];
+    }
+}
+
+/* In lanes of its own making: not every compiler dares to reorder a least or greatest of numbers that may be
+ * NaN. */
 static void find_extent(size_t count, const stericol_piece *piece, double *lowest, double *highest)
 {
     const double *use = piece->use, *lo = piece->lo, *hi = piece->hi;
-    double least = (double)INFINITY, most = -(double)INFINITY;
-#pragma omp simd reduction(min : least) reduction(max : most)
-    for (size_t i = 0; i < count; i++) {
-        const double first = lo[i], last = hi[i];
-        const double width = use[i] > 0.0 ? last - first : 0.0;
-        const double from = width > 0.0 ? first : (double)INFINITY;
-        const double to = width > 0.0 ? last : -(double)INFINITY;
-        least = from < least ? from : least;
-        most = to > most ? to : most;
+    double least[LANES], most[LANES];
+    size_t i = 0;
+    for (size_t lane = 0; lane < LANES; lane++) {
+        least[lane] = (double)INFINITY;
+        most[lane] = -(double)INFINITY;
     }
-    *lowest = least;
-    *highest = most;
+    for (; i + LANES <= count; i += LANES)
+        widen_extent(LANES, use + i, lo + i, hi + i, least, most);
+    widen_extent(count - i, use + i, lo + i, hi + i, least, most);
+    *lowest = (double)INFINITY;
+    *highest = -(double)INFINITY;
+    for (size_t lane = 0; lane < LANES; lane++) {
+        *lowest = least[lane] < *lowest ? least[lane] : *lowest;
+        *highest = most[lane] > *highest ? most[lane] : *highest;
+    }
 }
 
 static void cut(size_t count, const stericol_piece *piece, const double *above, const double *below,
