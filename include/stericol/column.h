@@ -116,7 +116,8 @@ typedef struct stericol_column_options {
     double reference_density;         /**< kg/m3; 0 (default) is local: the fractional change of volume */
     double surface_reach; /**< m, default 20: how deep the first sample may lie to be carried up to 0 */
     double gap_reach;     /**< m; NAN (default): clamp(50 + 0.225 z, 50, 500), z the upper sample's depth */
-    double bottom_reach;  /**< m, default 0: how far the deepest sample is carried towards a known floor */
+    double bottom_reach;  /**< m, default 0: how far below the deepest sample a known floor may lie to be
+                             carried to */
     /**
      * Default false: a grid, where only missing levels between valid ones make a gap and where a column that
      * stops above the axis' last level ends at the sea floor.  true: casts, where the spacing of any two

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The deepest sample is carried down: towards the sea floor, and for casts to limits that are close. */
+/* The deepest sample is carried down: to a sea floor within reach, and for casts to limits that are close. */
 #include "column/sweep.h"
 
 #include <string.h>
@@ -24,11 +24,10 @@ static double target_of(const stericol_sweep *sweep, size_t column)
     const double floor = stericol_floor_of(sweep, column);
     const double reached = stericol_metres(sweep, end, row);
     double target = end;
-    if (isfinite(floor) && (phase & STERICOL_PHASE_GAP) == 0 && sweep->options.bottom_reach > 0.0) {
-        const double reach = reached + sweep->options.bottom_reach;
-        target =
-            reach >= stericol_metres(sweep, floor, row) ? floor : stericol_coordinate_at(sweep, reach, row);
-    }
+    /* As at the surface: all the way or not at all, so that no water is made up above a floor far below. */
+    if (isfinite(floor) && (phase & STERICOL_PHASE_GAP) == 0 &&
+        stericol_metres(sweep, floor, row) - reached <= sweep->options.bottom_reach)
+        target = floor > end ? floor : end;
     for (size_t k = 0; sweep->options.cast && k < sweep->cuts.layer_count; k++) {
         const size_t limit = sweep->cuts.layer[k].lower;
         const double metres = sweep->cuts.limit[limit];

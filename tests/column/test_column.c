@@ -464,15 +464,15 @@ static void bathymetry_cuts_and_carries(void **state)
     assert_int_equal(o.flag, STERICOL_COLUMN_SEA_FLOOR);
     assert_close(o.layer[1], a * (175.0 + 400.0), rounding); /* (3+4)/2*50, then 4*100 */
     assert_same_number(o.deepest, 400.0);
-    options.bottom_reach = 99.0; /* carried, but not to the floor */
+    options.bottom_reach = 99.0; /* the floor is out of reach: nothing is carried */
     o = run(&options, &f);
     assert_int_equal(o.flag, STERICOL_COLUMN_END_OF_DATA);
     assert_int_equal(o.state[1], STERICOL_LAYER_INCOMPLETE);
     options.layers = stericol_column_options_default().layers;
     options.layer_count = 1;
     o = run(&options, &f);
-    assert_same_number(o.depth, 399.0);
-    assert_close(o.total, a * (100.0 + 150.0 + 300.0 + 396.0), rounding);
+    assert_same_number(o.depth, 300.0);
+    assert_close(o.total, a * (100.0 + 150.0 + 300.0), rounding);
 
     /* A column that stops above the axis' last level has not reached a floor that is known to be deeper. */
     f.temperature[0][3] = MISSING;
