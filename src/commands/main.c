@@ -5,6 +5,7 @@
 #include "job/signals.h"
 
 #include <errno.h>
+#include <fcntl.h>
 #include <locale.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -39,7 +40,9 @@ static stericol_status print_text(stericol_text *text)
         fputs("stericol: no memory left for the text\n", stderr);
         status = STERICOL_MEMORY;
     } else if (fputs(stericol_text_string(text), stdout) < 0 || fflush(stdout) != 0) {
-        fprintf(stderr, "stericol: standard output: cannot be written (%s)\n", strerror(errno));
+        fprintf(stderr,
+                "stericol: standard output: cannot be written (%s); make room, or send it somewhere else\n",
+                strerror(errno));
         status = STERICOL_OUTPUT;
     }
     stericol_text_free(text);
@@ -106,12 +109,26 @@ static stericol_status run_command(const stericol_request *request, int argc, ch
     return status;
 }
 
+/*
+ * A file opened while standard output or error is closed would take its number, and be written over by
+ * messages.  Opened for reading, so that writing still fails.
+ */
+static void occupy_standard_files(void)
+{
+    for (int file = open("/dev/null", O_RDONLY); file >= 0; file = open("/dev/null", O_RDONLY))
+        if (file > STDERR_FILENO) {
+            close(file);
+            return;
+        }
+}
+
 int main(int argc, char **argv)
 {
     stericol_context *context = stericol_context_new();
     stericol_request request = {0};
     stericol_status status;
 
+    occupy_standard_files();
     setlocale(LC_CTYPE, "");
     if (context == NULL) {
         fputs("stericol: no memory left to begin with\n", stderr);

@@ -338,7 +338,7 @@ static void reset(stericol_pair_work *work, stericol_pair_outcome *outcome)
         memset(work->tally[e], 0, work->grid->levels * sizeof *work->tally[e]);
     for (size_t i = 0; i < work->executor->workers; i++) {
         stericol_region_totals_clear(work->totals[i]);
-        work->counters[i].outside_equation = 0;
+        work->counters[i].outside_equation = work->counters[i].rejected = 0;
     }
     memset(outcome->flags, 0, sizeof outcome->flags);
     outcome->used = 0;
@@ -420,6 +420,8 @@ static stericol_status gather(stericol_pair_work *work, stericol_pair_outcome *o
     for (size_t i = 0; i < work->executor->workers; i++)
         outcome->outside_equation += work->counters[i].outside_equation;
     outcome->rejected = 0.0;
+    for (size_t i = 0; i < work->executor->workers; i++)
+        outcome->rejected += (double)work->counters[i].rejected;
     for (size_t e = 0; e < work->epoch_count; e++)
         for (size_t k = 0; k < work->level_count; k++) {
             const stericol_epoch_tally *tally = &work->tally[e][k];

@@ -8,8 +8,15 @@
 /* Counters that each worker keeps for itself and that are added up at the end; a line of cache apart. */
 typedef struct stericol_pair_counters {
     size_t outside_equation;
-    char apart[120];
+    size_t rejected; /* by a scenario */
+    char apart[112];
 } stericol_pair_counters;
+
+/* Physical limits of a scenario's changed state, as those of values read (input/): degC, g/kg. */
+#define STERICOL_PAIR_LEAST_TEMPERATURE (-4.0)
+#define STERICOL_PAIR_MOST_TEMPERATURE 45.0
+#define STERICOL_PAIR_LEAST_SALINITY 0.0
+#define STERICOL_PAIR_MOST_SALINITY 45.0
 
 /* One run over the whole grid. */
 typedef struct stericol_pair_work {

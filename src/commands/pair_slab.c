@@ -232,11 +232,12 @@ static void scenario_at(const stericol_scenario_profile *profile, double depth, 
     *freshening = profile->freshening[i - 1] + share * (profile->freshening[i] - profile->freshening[i - 1]);
 }
 
-static void change_piece(const stericol_pair_work *work, const stericol_pair_piece *piece,
-                         const double *salinity, const double *temperature, double *changed_salinity,
-                         double *changed_temperature)
+static size_t change_piece(const stericol_pair_work *work, const stericol_pair_piece *piece,
+                           const double *salinity, const double *temperature, double *changed_salinity,
+                           double *changed_temperature)
 {
     double warming = 0.0, freshening = 0.0;
+    size_t rejected = 0;
 
     scenario_at(&work->pair->scenario, piece->depth, &warming, &freshening);
     for (size_t i = 0; i < piece->count; i++) {
@@ -244,7 +245,16 @@ static void change_piece(const stericol_pair_work *work, const stericol_pair_pie
             scenario_at(&work->pair->scenario, piece->depths[i], &warming, &freshening);
         changed_temperature[i] = temperature[i] + warming;
         changed_salinity[i] = salinity[i] - freshening;
+        /* Fresher than fresh water, or hotter than any sea: rejected, as it would be in a file. */
+        if (changed_salinity[i] < STERICOL_PAIR_LEAST_SALINITY ||
+            changed_salinity[i] > STERICOL_PAIR_MOST_SALINITY ||
+            changed_temperature[i] < STERICOL_PAIR_LEAST_TEMPERATURE ||
+            changed_temperature[i] > STERICOL_PAIR_MOST_TEMPERATURE) {
+            rejected += isfinite(temperature[i]) && isfinite(salinity[i]) ? 1 : 0;
+            changed_salinity[i] = changed_temperature[i] = INFINITY;
+        }
     }
+    return rejected;
 }
 
 /* The smallest and largest of some values; a NaN loses every comparison and is passed over. */
@@ -309,8 +319,9 @@ static void convert_piece_of_slab(void *argument, const stericol_pair_piece *pie
     for (size_t e = 0; e < work->epoch_count; e++)
         stericol_pair_convert_piece(work, e, piece, slab->salinity[e] + at, slab->temperature[e] + at);
     if (work->pair->kind == STERICOL_PAIR_SCENARIO)
-        change_piece(work, piece, slab->salinity[0] + at, slab->temperature[0] + at, slab->salinity[1] + at,
-                     slab->temperature[1] + at);
+        work->counters[task->worker].rejected +=
+            change_piece(work, piece, slab->salinity[0] + at, slab->temperature[0] + at,
+                         slab->salinity[1] + at, slab->temperature[1] + at);
     for (size_t e = 0; e < 2; e++)
         work->counters[task->worker].outside_equation +=
             count_outside(work->pair->column.water, piece, slab->salinity[e] + at, slab->temperature[e] + at);

@@ -101,6 +101,17 @@ static stericol_status choose_regions(stericol_session *session, const stericol_
     return STERICOL_OK;
 }
 
+/* Numbers for no region at all would be a page of blanks. */
+static stericol_status check_regions(stericol_session *session, const stericol_publication *publication)
+{
+    for (size_t r = 0; r < publication->region_count; r++)
+        if (sums_of(&publication->outcome, publication->chosen[r], STERICOL_WHOLE_COLUMN)->covered_area > 0.0)
+            return STERICOL_OK;
+    return stericol_fail(session->context, STERICOL_NOTHING, NULL, NULL,
+                         "give regions that hold data; inspect shows where the grid lies",
+                         "no region holds a column that could be used");
+}
+
 static stericol_status write_regions(stericol_session *session, stericol_publication *publication)
 {
     const stericol_change_layout *layout = &publication->layout;
@@ -246,6 +257,8 @@ stericol_status stericol_publish(stericol_session *session, const stericol_setup
         status = stericol_pair_run(session->context, session->executor, &setup->pair, publication.result,
                                    &publication.layout, stericol_session_tick, session, &publication.outcome);
     if (status == STERICOL_OK)
+        status = check_regions(session, &publication);
+    if (status == STERICOL_OK)
         stericol_publish_warnings(session, &publication);
     if (status == STERICOL_OK && output != NULL) {
         status = write_areas(session, setup, publication.result);
@@ -253,12 +266,12 @@ stericol_status stericol_publish(stericol_session *session, const stericol_setup
             status = write_regions(session, &publication);
         if (status == STERICOL_OK)
             status = stericol_publish_provenance(session, &publication);
-        if (status == STERICOL_OK)
-            status =
-                stericol_result_commit(session->context, publication.result, publication.outcome.deepest);
     }
+    /* The table first: a run whose table cannot be printed fails, and then leaves no output. */
     if (status == STERICOL_OK)
         status = stericol_publish_table(session, &publication);
+    if (status == STERICOL_OK && output != NULL)
+        status = stericol_result_commit(session->context, publication.result, publication.outcome.deepest);
     if (status == STERICOL_OK && output != NULL)
         stericol_session_say(session, "wrote %s", output);
     release(&publication);

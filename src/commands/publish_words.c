@@ -9,12 +9,23 @@
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/stat.h>
 
 /* ---- warnings ---- */
 
 static size_t whole_region(const stericol_publication *publication)
 {
     return publication->region_count - 1; /* the whole domain, or the last that was asked for */
+}
+
+/* Where the data end, m: the lower limit of the last level, or its position; nominal where depths differ. */
+static double deepest_of_data(const stericol_setup *setup)
+{
+    const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
+    bool cells = setup->pair.column.vertical == STERICOL_VERTICAL_CELLS && grid->level_bounds != NULL;
+    double last = cells ? grid->level_bounds[2 * grid->levels - 1] : grid->level[grid->levels - 1];
+
+    return grid->vertical == STERICOL_VERTICAL_PRESSURE ? stericol_depth(last, 45.0) : last;
 }
 
 static void warn_of_ends(stericol_session *session, const stericol_publication *publication)
@@ -34,11 +45,12 @@ static void warn_of_ends(stericol_session *session, const stericol_publication *
         outcome->flags[STERICOL_COLUMN_UNEQUAL], outcome->flags[STERICOL_COLUMN_GAP],
         outcome->flags[STERICOL_COLUMN_OUTSIDE_RANGE]);
     if (outcome->flags[STERICOL_COLUMN_END_OF_DATA] > 0)
-        stericol_session_warn(
-            session,
-            "%zu columns reach the deepest level of the data, %g m, not the sea floor: what lies below "
-            "is not in the result",
-            outcome->flags[STERICOL_COLUMN_END_OF_DATA], outcome->deepest);
+        stericol_session_warn(session,
+                              "%zu columns end with the data (deepest level %g m), not at the sea floor: "
+                              "what lies below is not "
+                              "in the result",
+                              outcome->flags[STERICOL_COLUMN_END_OF_DATA],
+                              deepest_of_data(publication->setup));
     if (outcome->flags[STERICOL_COLUMN_UNEQUAL] > 0)
         stericol_session_warn(
             session, "%zu columns reach deeper in one epoch than in the other: only the common depth counts",
@@ -115,6 +127,11 @@ void stericol_publish_warnings(stericol_session *session, const stericol_publica
             session,
             "the layers do not cover the same columns: each layer's mean is over its own covered area, and "
             "layer means do not add up to the column's");
+    if (publication->layout.fill_coverage &&
+        strcmp(stericol_settings_text(session->settings, "table"), "text") == 0)
+        stericol_session_say(
+            session, "the sums scaled up by --fill-coverage stand in the result file and in --table csv "
+                     "or json, not in this table");
     if (!publication->setup->has_salinity)
         stericol_session_warn(
             session,
@@ -141,6 +158,17 @@ static void add_inputs(stericol_text *text, const char *role, const stericol_epo
 
         add_line(text, role, path, &identity);
     }
+}
+
+/* The depth table of a scenario, which is no NetCDF file. */
+static void add_profile(stericol_text *text, const char *path)
+{
+    struct stat found;
+
+    if (path != NULL && stat(path, &found) == 0)
+        add_line(
+            text, "profile", path,
+            &(stericol_cf_identity){.bytes = (unsigned long long)found.st_size, .changed = found.st_mtime});
 }
 
 /* Files that options name and no epoch holds. */
@@ -213,6 +241,16 @@ static void describe_method(stericol_text *text, const stericol_setup *setup)
                          column->coordinate == STERICOL_COORDINATE_PRESSURE ? "pressure" : "depth",
                          vertical[column->vertical], attribution[column->attribution],
                          setup->pair.average_integrals ? "integrals of the members" : "state");
+    stericol_text_format(text, "; first sample carried up from at most %.17g m", column->surface_reach);
+    if (isnan(column->gap_reach))
+        stericol_text_add(text, "; gaps bridged up to 50 m + 0.225 z, at least 50 m, at most 500 m");
+    else
+        stericol_text_format(text, "; gaps bridged up to %.17g m", column->gap_reach);
+    if (setup->pair.sea_floor != NULL)
+        stericol_text_format(text, "; deepest sample carried down to a sea floor at most %.17g m below it",
+                             column->bottom_reach);
+    else
+        stericol_text_add(text, "; nothing carried down");
 }
 
 /* One line each: what is assumed beyond what the files say. */
@@ -243,6 +281,16 @@ static void describe_months(stericol_text *text, const stericol_epoch *epoch)
     stericol_epoch_months(epoch, count);
     for (size_t m = 0; m < 12; m++)
         stericol_text_format(text, "%s%zu", m == 0 ? "" : " ", count[m]);
+}
+
+/* "depth m: warming K, freshening g kg-1", a row a line. */
+static void describe_scenario(stericol_text *text, const stericol_setup *setup)
+{
+    const stericol_scenario_profile *profile = &setup->pair.scenario;
+
+    for (size_t i = 0; i < profile->count; i++)
+        stericol_text_format(text, "%s%.17g m: warming %.17g K, freshening %.17g g kg-1", i == 0 ? "" : "\n",
+                             profile->depth[i], profile->warming[i], profile->freshening[i]);
 }
 
 typedef struct attribute {
@@ -289,6 +337,7 @@ stericol_status stericol_publish_provenance(stericol_session *session, stericol_
     enum {
         INPUTS,
         SETTINGS,
+        SCENARIO,
         ASSUMPTIONS,
         EQUATION,
         METHOD,
@@ -299,6 +348,7 @@ stericol_status stericol_publish_provenance(stericol_session *session, stericol_
     };
     attribute attributes[COUNT] = {{"inputs", {0}},
                                    {"settings", {0}},
+                                   {"scenario", {0}},
                                    {"assumptions", {0}},
                                    {"equation_of_state", {0}},
                                    {"method", {0}},
@@ -315,11 +365,15 @@ stericol_status stericol_publish_provenance(stericol_session *session, stericol_
     stericol_settings_write(session->settings, &attributes[SETTINGS].text);
     describe_assumptions(&attributes[ASSUMPTIONS].text, session, setup);
     describe_equation(&attributes[EQUATION].text, setup);
+    if (scenario)
+        describe_scenario(&attributes[SCENARIO].text, setup);
     describe_method(&attributes[METHOD].text, setup);
     describe_months(&attributes[MONTHS_EARLIER].text, setup->epochs[0]);
     if (!scenario)
         describe_months(&attributes[MONTHS_LATER].text, setup->epochs[1]);
     stericol_text_add(&attributes[INSTRUCTIONS].text, stericol_instruction_set());
+    if (scenario)
+        add_profile(&attributes[INPUTS].text, stericol_settings_text(session->settings, "profile"));
     status = add_other_inputs(session, &attributes[INPUTS].text);
     if (status == STERICOL_OK)
         status = put_constants(session, publication);
@@ -378,6 +432,12 @@ static stericol_status print_rows(stericol_session *session, const stericol_tabl
     return status;
 }
 
+static bool is_default(const stericol_setup *setup)
+{
+    return setup->pair.column.layer_count == 1 && setup->layers[0].upper <= 0.0 &&
+           !isfinite(setup->layers[0].lower);
+}
+
 stericol_status stericol_publish_table(stericol_session *session, const stericol_publication *publication)
 {
     size_t layers = publication->layout.layers, parts = layers > 1 ? layers + 1 : 1, count = 0;
@@ -396,7 +456,10 @@ stericol_status stericol_publish_table(stericol_session *session, const stericol
             bool whole = part + 1 == parts;
 
             fill_row(publication, r, whole ? STERICOL_WHOLE_COLUMN : part, &rows[count]);
-            rows[count++].layer = whole ? NULL : names[part];
+            /* The default, the whole column, needs no name. */
+            rows[count++].layer = !whole                                           ? names[part]
+                                  : layers == 1 && !is_default(publication->setup) ? names[0]
+                                                                                   : NULL;
         }
     status = print_rows(session, rows, count);
 done:

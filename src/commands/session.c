@@ -45,7 +45,7 @@ static void take_notice(void *user, stericol_notice_level level, const char *tex
     if (session->quiet)
         return;
     stericol_progress_hide(session->progress);
-    fprintf(stderr, "stericol: %s%s\n", warning ? "warning: " : "", text);
+    fprintf(stderr, "stericol: %s: %s\n", warning ? "warning" : "note", text);
 }
 
 static stericol_status open_log(stericol_session *session)
@@ -156,23 +156,26 @@ stericol_status stericol_session_print(stericol_session *session, const char *te
 {
     stericol_progress_hide(session->progress);
     if (fputs(text, stdout) < 0 || fflush(stdout) != 0)
-        return stericol_fail(session->context, STERICOL_OUTPUT, "standard output", NULL, NULL,
-                             "cannot be written (%s)", strerror(errno));
+        return stericol_fail(session->context, STERICOL_OUTPUT, "standard output", NULL,
+                             "make room, or send it somewhere else", "cannot be written (%s)",
+                             strerror(errno));
     return STERICOL_OK;
 }
 
 static void say_list(stericol_session *session, bool warning, const char *format, va_list arguments)
 {
-    stericol_text line = {0};
+    stericol_text line = {0}, raw = {0};
 
-    stericol_text_format_list(&line, format, arguments);
+    stericol_text_format_list(&raw, format, arguments);
+    stericol_text_add_printable(&line, stericol_text_string(&raw));
+    stericol_text_free(&raw);
     if (warning)
         stericol_text_format(&session->assumptions, "warning: %s\n", stericol_text_string(&line));
     stericol_log_write(session->log, warning ? STERICOL_LOG_WARNING : STERICOL_LOG_INFO,
                        warning ? "warning" : "summary", stericol_text_string(&line), NULL, 0);
     if (!session->quiet) {
         stericol_progress_hide(session->progress);
-        fprintf(stderr, "stericol: %s%s\n", warning ? "warning: " : "", stericol_text_string(&line));
+        fprintf(stderr, "stericol: %s: %s\n", warning ? "warning" : "note", stericol_text_string(&line));
     }
     stericol_text_free(&line);
 }

@@ -291,6 +291,13 @@ static stericol_status settle_vertical(stericol_session *session, stericol_setup
     const char *asked = stericol_settings_text(session->settings, "vertical");
 
     if (strcmp(asked, "auto") == 0)
+        stericol_notice(
+            session->context, STERICOL_NOTE, stericol_epoch_temperature(setup->epochs[0]).file,
+            grid->level_name,
+            has_cells ? "--vertical auto: values are taken as means over the vertical cells"
+                      : "--vertical auto: values are taken as samples, for want of bounds, the integrand "
+                        "linear between them");
+    if (strcmp(asked, "auto") == 0)
         setup->pair.column.vertical = has_cells ? STERICOL_VERTICAL_CELLS : STERICOL_VERTICAL_LINEAR;
     if (setup->pair.column.vertical == STERICOL_VERTICAL_CELLS && !has_cells)
         return stericol_fail(session->context, STERICOL_INPUT,
@@ -347,6 +354,21 @@ static void settle_rules(stericol_session *session, stericol_setup *setup, size_
     }
 }
 
+/* The last row of a table holds for all that lies below it: said, since that is most of the sea. */
+static void warn_of_profile(stericol_session *session, const stericol_setup *setup, const char *path,
+                            double end)
+{
+    const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
+    double last = grid->level[grid->levels - 1];
+
+    if (grid->vertical == STERICOL_VERTICAL_PRESSURE)
+        last = stericol_depth(last, 0.0);
+    if (end < last)
+        stericol_session_warn(
+            session, "%s: the table ends at %g m and the field at %g m: its last row is used for all below",
+            path, end, last);
+}
+
 static stericol_status make_scenario(stericol_session *session, stericol_setup *setup)
 {
     const char *path = text_or_null(session->settings, "profile");
@@ -360,6 +382,7 @@ static stericol_status make_scenario(stericol_session *session, stericol_setup *
 
         if (status != STERICOL_OK)
             return status;
+        warn_of_profile(session, setup, path, setup->profile[count - 1]);
     } else {
         setup->profile = stericol_new_array(3, sizeof(double));
         if (setup->profile == NULL)

@@ -109,12 +109,34 @@ static stericol_status take_own_floor(stericol_session *session, stericol_setup 
     return STERICOL_OK;
 }
 
+/* Some planes of the whole grid are held throughout: refused here where they cannot be. */
+static stericol_status check_room(stericol_session *session, const stericol_setup *setup)
+{
+    const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
+    double cell = sizeof(double) + 1.0; /* its area, and whether it repeats another */
+    double bytes, memory = (double)stericol_session_memory(session);
+
+    if (grid->curvilinear)
+        cell += 4.0 * sizeof(double); /* position and corner */
+    if (stericol_settings_text(session->settings, "bathymetry") != NULL)
+        cell += sizeof(double);
+    bytes = cell * (double)grid->rows * (double)grid->columns;
+    if (bytes <= memory)
+        return STERICOL_OK;
+    return stericol_fail(session->context, STERICOL_MEMORY, stericol_epoch_temperature(setup->epochs[0]).file,
+                         NULL, "give a larger --memory",
+                         "the areas of %zu by %zu cells take %.0f MiB, and --memory allows %.0f MiB",
+                         grid->rows, grid->columns, ceil(bytes / 1048576.0), memory / 1048576.0);
+}
+
 stericol_status stericol_setup_places(stericol_session *session, stericol_setup *setup)
 {
     const stericol_grid *grid = stericol_epoch_grid(setup->epochs[0]);
     const char *bathymetry = stericol_settings_text(session->settings, "bathymetry");
-    stericol_status status = STERICOL_OK;
+    stericol_status status = check_room(session, setup);
 
+    if (status != STERICOL_OK)
+        return status;
     if (bathymetry == NULL)
         status = take_own_floor(session, setup);
     else
