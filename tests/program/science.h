@@ -73,6 +73,7 @@ struct sea {
     sea_axis time, depth, latitude, longitude; /* time.count 0: no time dimension */
     const char *time_units, *calendar, *depth_units;
     const char *temperature_name, *salinity_name; /* standard names */
+    const char *salinity_units;
     sea_value *value;
     const void *user;
 };

@@ -20,7 +20,8 @@ sea sea_plain(void)
                  .calendar = "noleap",
                  .depth_units = "m",
                  .temperature_name = "sea_water_conservative_temperature",
-                 .salinity_name = "sea_water_absolute_salinity"};
+                 .salinity_name = "sea_water_absolute_salinity",
+                 .salinity_units = "g kg-1"};
 }
 
 sea_form form_plain(void)
@@ -198,7 +199,7 @@ static int define_field(int group, const sea *of, const sea_form *form, const ar
     }
     must(nc_def_var(group, warmth ? "temperature" : "salinity", form->type, rank, dimension, &variable));
     put_text(group, variable, "standard_name", warmth ? of->temperature_name : of->salinity_name);
-    put_text(group, variable, "units", !warmth ? "g kg-1" : form->kelvin ? "K" : "degC");
+    put_text(group, variable, "units", !warmth ? of->salinity_units : form->kelvin ? "K" : "degC");
     if (form->chunk[X] > 0)
         must(nc_def_var_chunking(group, variable, NC_CHUNKED, chunk));
     if (form->deflate > 0)
