@@ -242,6 +242,10 @@ stericol_status stericol_cf_read(stericol_context *context, stericol_cf_file *fi
     return status;
 }
 
+/* What is read at once describes a grid: a header that claims more than these lies, or the file is beyond
+ * this program. */
+static const size_t MOST_ON_LINE = (size_t)1 << 24, MOST_AT_ONCE = (size_t)1 << 29;
+
 stericol_status stericol_cf_read_all(stericol_context *context, stericol_cf_file *file,
                                      const stericol_cf_variable *variable, size_t most, double **values,
                                      size_t *count)
@@ -255,6 +259,10 @@ stericol_status stericol_cf_read_all(stericol_context *context, stericol_cf_file
         return stericol_fail(context, STERICOL_INPUT, file->path, variable->name,
                              "check that it is the variable meant",
                              "holds more than the %zu values that can be used here", most);
+    if (total > (variable->rank == 1 ? MOST_ON_LINE : MOST_AT_ONCE))
+        return stericol_fail(context, STERICOL_INPUT, file->path, variable->name,
+                             "check that the header tells the truth about its lengths",
+                             "claims %zu values, more than any grid has", total);
     *values = stericol_new_doubles(total);
     if (*values == NULL)
         return stericol_fail_memory(context, total * sizeof(double), variable->name);

@@ -185,6 +185,9 @@ static stericol_status read_unit(const stericol_input_reader *reader, stericol_i
         conversion->low = -most_anomaly;
         conversion->high = most_anomaly;
     }
+    if (!unit && stericol_cf_attribute_of(variable, "units"))
+        return stericol_input_refuse(reader, variable->name, "correct the units attribute, or remove it",
+                                     "the units attribute is no text");
     if (!unit || !unit[strspn(unit, " \t")]) {
         chosen->unit_assumed = true;
         stericol_input_say(reader, STERICOL_WARNING, variable->name,

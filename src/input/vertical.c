@@ -83,6 +83,9 @@ static int direction(const stericol_input_reader *reader, const level_axis *axis
         return 1;
     if (positive && stericol_same_ignoring_case(positive, "up"))
         return -1;
+    if (positive)
+        stericol_input_say(reader, STERICOL_WARNING, axis->variable->name,
+                           "positive is \"%s\", neither up nor down, and is left aside", positive);
     if (axis->kind == STERICOL_VERTICAL_PRESSURE)
         return 1;
     if (standard_name && stericol_starts_with(standard_name, "depth"))

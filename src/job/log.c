@@ -176,7 +176,8 @@ stericol_status stericol_log_close(stericol_context *context, stericol_log *log)
     if (close(log->file) != 0 && log->error == 0)
         log->error = errno;
     if (log->error != 0)
-        status = stericol_fail(context, STERICOL_OUTPUT, log->path, NULL, NULL,
+        status = stericol_fail(context, STERICOL_OUTPUT, log->path, NULL,
+                               "make room for it, or give another file to --log",
                                "the log could not be written: %s", strerror(log->error));
     pthread_mutex_destroy(&log->lock);
     free(log->path);

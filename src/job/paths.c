@@ -127,7 +127,7 @@ static stericol_status add_lines(stericol_context *context, const char *list, FI
             status = add_plain_or_matches(context, list, path, paths);
     }
     if (status == STERICOL_OK && !feof(file))
-        status = stericol_fail(context, STERICOL_INPUT, list, NULL, NULL,
+        status = stericol_fail(context, STERICOL_INPUT, list, NULL, "give a text file with a path a line",
                                "the list of files cannot be read: %s", strerror(errno));
     free(line);
     return status;
@@ -140,7 +140,7 @@ static stericol_status add_list(stericol_context *context, const char *list, ste
     stericol_status status;
 
     if (file == NULL)
-        return stericol_fail(context, STERICOL_INPUT, list, NULL, NULL,
+        return stericol_fail(context, STERICOL_INPUT, list, NULL, "check its name and permissions",
                              "the list of files cannot be opened: %s", strerror(errno));
     status = add_lines(context, list, file, paths);
     fclose(file);

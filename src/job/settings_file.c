@@ -21,13 +21,13 @@ static stericol_status read_whole(stericol_context *context, const char *path, s
     stericol_status status = STERICOL_OK;
 
     if (file == NULL)
-        return stericol_fail(context, STERICOL_INPUT, path, NULL, NULL,
+        return stericol_fail(context, STERICOL_INPUT, path, NULL, "check its name and permissions",
                              "the settings file cannot be opened: %s", strerror(errno));
     errno = 0;
     while ((length = fread(part, 1, sizeof part, file)) > 0 && text->length <= LARGEST_FILE)
         stericol_text_add_bytes(text, part, length);
     if (ferror(file))
-        status = stericol_fail(context, STERICOL_INPUT, path, NULL, NULL,
+        status = stericol_fail(context, STERICOL_INPUT, path, NULL, "give a text of 'name = value' lines",
                                "the settings file cannot be read: %s", strerror(errno));
     else if (text->failed)
         status = stericol_fail_memory(context, 0, "the settings file");

@@ -48,7 +48,7 @@ static bool handle(int number)
 
 stericol_status stericol_signals_begin(stericol_context *context)
 {
-    if (handle(SIGINT) && handle(SIGTERM) && signal(SIGPIPE, SIG_IGN) != SIG_ERR)
+    if (handle(SIGINT) && handle(SIGTERM) && handle(SIGHUP) && signal(SIGPIPE, SIG_IGN) != SIG_ERR)
         return STERICOL_OK;
     return stericol_fail(context, STERICOL_FAULT, NULL, NULL, NULL, "signals cannot be handled: %s",
                          strerror(errno));

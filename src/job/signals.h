@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Interruption by SIGINT and SIGTERM. */
+/* Interruption by SIGINT, SIGTERM and SIGHUP. */
 #ifndef STERICOL_JOB_SIGNALS_H
 #define STERICOL_JOB_SIGNALS_H
 
@@ -8,8 +8,8 @@
 #include <stdbool.h>
 
 /*
- * From now on SIGINT and SIGTERM only raise a flag (one that was ignored at the start stays ignored), and
- * SIGPIPE is ignored, so that a write to a closed pipe fails with EPIPE.  The third signal ends the program
+ * From now on SIGINT, SIGTERM and SIGHUP only raise a flag (one that was ignored at the start stays
+ * ignored), and SIGPIPE is ignored, so that a write to a closed pipe fails with EPIPE.  The third signal ends the program
  * at once.  Call it once, before any thread is started.  STERICOL_FAULT where the system refuses.
  */
 stericol_status stericol_signals_begin(stericol_context *context);

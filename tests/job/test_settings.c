@@ -464,10 +464,12 @@ static void bad_settings_are_refused(void **state)
         assert_refused("change --earlier a --later b --table json --output x --settings %S", message);
     }
     assert_refused_as("change --settings " TEST_BUILD_FOLDER "/absent.txt", STERICOL_INPUT,
-                      TEST_BUILD_FOLDER
-                      "/absent.txt: the settings file cannot be opened: No such file or directory");
-    assert_refused_as("change --settings " TEST_BUILD_FOLDER, STERICOL_INPUT,
-                      TEST_BUILD_FOLDER ": the settings file cannot be read: Is a directory");
+                      TEST_BUILD_FOLDER "/absent.txt: the settings file cannot be opened: No such file or "
+                                        "directory; check its name and permissions");
+    assert_refused_as(
+        "change --settings " TEST_BUILD_FOLDER, STERICOL_INPUT,
+        TEST_BUILD_FOLDER
+        ": the settings file cannot be read: Is a directory; give a text of 'name = value' lines");
     assert_refused("change --settings /dev/zero",
                    "/dev/zero: this is no settings file; give a text of 'name = value' "
                    "lines");

@@ -325,7 +325,9 @@ static void a_log_that_cannot_be_written_is_told(void **state)
     stericol_log_write(log, STERICOL_LOG_INFO, "end", "lost too", NULL, 0);
     assert_int_equal(stericol_log_close(context, log), STERICOL_OUTPUT);
     assert_string_equal(stericol_context_message(context),
-                        "/dev/full: the log could not be written: No space left on device");
+                        "/dev/full: the log could not be written: No space left on device; make room for it, "
+                        "or give another file to "
+                        "--log");
     stericol_context_free(context);
     stericol_log_write(NULL, STERICOL_LOG_INFO, "no", "log", NULL, 0);
     assert_int_equal(stericol_log_close(NULL, NULL), STERICOL_OK);

@@ -327,9 +327,13 @@ static void lists_are_expanded(void **state)
     write_file("list.txt", "# nothing\n\n");
     assert_expansion("@list.txt", STERICOL_INPUT,
                      "list.txt: the list of files holds no path; give a path a line");
-    assert_expansion("@absent.txt", STERICOL_INPUT,
-                     "absent.txt: the list of files cannot be opened: No such file or directory");
-    assert_expansion("@.", STERICOL_INPUT, ".: the list of files cannot be read: Is a directory");
+    assert_expansion(
+        "@absent.txt", STERICOL_INPUT,
+        "absent.txt: the list of files cannot be opened: No such file or directory; check its name and "
+        "permissions");
+    assert_expansion(
+        "@.", STERICOL_INPUT,
+        ".: the list of files cannot be read: Is a directory; give a text file with a path a line");
 }
 
 static void binary_lists_are_refused(void **state)
