@@ -3,6 +3,8 @@
 #include "commands/commands.h"
 #include "commands/setup.h"
 
+#include "cf/write.h"
+
 #include <math.h>
 #include <stdlib.h>
 #include <string.h>
@@ -12,6 +14,11 @@ static stericol_status check_options(stericol_session *session, bool single)
 {
     const stericol_settings *settings = session->settings;
 
+    if (!single && stericol_cf_same_file(stericol_settings_text(settings, "earlier"),
+                                         stericol_settings_text(settings, "later")))
+        return stericol_fail(session->context, STERICOL_USAGE, NULL, NULL,
+                             "name another for one of them, or give one alone with --field",
+                             "both epochs are the same table");
     if (strcmp(stericol_settings_text(settings, "vertical"), "cells") == 0)
         return stericol_fail(session->context, STERICOL_USAGE, NULL, "--vertical",
                              "take linear, steffen or akima",
@@ -37,7 +44,7 @@ static stericol_status read_levels(stericol_session *session, bool single, const
     if (single) {
         status = stericol_working_table_read(session, "field", water, latitude, &tables[0]);
         if (status == STERICOL_OK)
-            status = stericol_working_levels_single(session, &tables[0], latitude, levels);
+            status = stericol_working_levels_single(session, &tables[0], latitude, gap_reach, levels);
     } else {
         for (size_t e = 0; e < 2 && status == STERICOL_OK; e++)
             status = stericol_working_table_read(session, labels[e], water, latitude, &tables[e]);
@@ -49,26 +56,29 @@ static stericol_status read_levels(stericol_session *session, bool single, const
     return status;
 }
 
-/* Small tables are often coarser than the rule that serves casts: the numbers say what to give. */
-static void warn_of_gap(stericol_session *session, const stericol_working *working)
+static void warn_of_end(stericol_session *session, const stericol_working *working, double sea_floor)
 {
-    const double reached = working->reached;
-    size_t next = 0;
+    const stericol_working_gap *gap = stericol_working_ending_gap(working);
 
-    while (next < working->row_count &&
-           !(working->rows[next].depth > reached + 1e-6 && isfinite(working->rows[next].expansion)))
-        next++;
-    if (next == working->row_count)
-        return;
-    stericol_session_warn(
-        session,
-        "the column ends at %g m: the next level is %g m further down, and --gap-reach bridges "
-        "%g m",
-        reached, working->rows[next].depth - reached,
-        stericol_working_gap_reach(working->options->gap_reach, reached));
+    /* Small tables are often coarser than the rule that serves casts: the numbers say what to give. */
+    if (gap != NULL)
+        stericol_session_warn(session,
+                              "the column ends at %g m: samples at %g and %g m are %g m apart, and %g m is "
+                              "allowed there; --gap-reach %.0f bridges all",
+                              working->reached, gap->upper, gap->lower, gap->lower - gap->upper, gap->allowed,
+                              gap->bridging);
+    else if (working->flag == STERICOL_COLUMN_UNEQUAL)
+        stericol_session_warn(
+            session, "one table reaches deeper than the other: only the common depth, to %g m, counts",
+            working->reached);
+    else if (working->flag == STERICOL_COLUMN_END_OF_DATA && !isnan(sea_floor))
+        stericol_session_warn(session,
+                              "the column ends at %g m: the sea floor is %g m further down, and "
+                              "--bottom-reach bridges %g m",
+                              working->reached, sea_floor - working->reached, working->options->bottom_reach);
 }
 
-static void warn(stericol_session *session, const stericol_working *working)
+static void warn(stericol_session *session, const stericol_working *working, double sea_floor)
 {
     const stericol_working_levels *levels = working->levels;
     size_t outside = 0;
@@ -83,12 +93,7 @@ static void warn(stericol_session *session, const stericol_working *working)
             session,
             "%zu values lie outside the range that the equation of state was made for; they were used",
             outside);
-    if (working->flag == STERICOL_COLUMN_GAP)
-        warn_of_gap(session, working);
-    if (working->flag == STERICOL_COLUMN_UNEQUAL)
-        stericol_session_warn(
-            session, "one table reaches deeper than the other: only the common depth, to %g m, counts",
-            working->reached);
+    warn_of_end(session, working, sea_floor);
     if (working->top > 0.0)
         stericol_session_warn(session,
                               "the column begins at %g m, deeper than --surface-reach: what lies above "
@@ -154,7 +159,7 @@ stericol_status stericol_command_column(stericol_session *session)
     if (status == STERICOL_OK)
         status = stericol_working_make(session->context, &levels, &options, sea_floor, &working);
     if (status == STERICOL_OK) {
-        warn(session, &working);
+        warn(session, &working, sea_floor);
         status = print_working(session, &working);
     }
     stericol_working_free(&working);

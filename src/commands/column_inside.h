@@ -34,6 +34,13 @@ void stericol_working_table_free(stericol_working_table *table);
 
 /* ---- column_levels.c: the levels of two states ---- */
 
+/* The first gap that is too wide to be bridged, m.  Where there is none, upper, lower and allowed are NaN. */
+typedef struct stericol_working_gap {
+    double upper, lower; /* the samples on both sides */
+    double allowed;      /* that is bridged there */
+    double bridging;     /* what --gap-reach must be to bridge all, in whole metres */
+} stericol_working_gap;
+
 /* Arrays are [count], in one allocation that begins at `depth`. */
 typedef struct stericol_working_levels {
     bool single; /* one table: the earlier state is the standard ocean */
@@ -43,6 +50,7 @@ typedef struct stericol_working_levels {
     size_t count;
     double *depth, *pressure;             /* m, dbar, increasing */
     double *salinity[2], *temperature[2]; /* earlier, later; NaN is missing */
+    stericol_working_gap gap; /* in a table, within the depths that both have; else between common samples */
 } stericol_working_levels;
 
 /*
@@ -56,11 +64,8 @@ stericol_status stericol_working_levels_pair(stericol_session *session,
 /* The levels of one table against the standard ocean: 35.16504 g/kg and 0 degC conservative; with EOS-80
    S = 35 and 0 degC in situ.  Integrated over pressure. */
 stericol_status stericol_working_levels_single(stericol_session *session, const stericol_working_table *table,
-                                               double latitude, stericol_working_levels *levels);
-/* How wide a gap is bridged below a sample at `depth`, all m: `asked`, or where that is NaN the default rule
-   of
-   --gap-reach, clamp(50 + 0.225 z, 50, 500). */
-double stericol_working_gap_reach(double asked, double depth);
+                                               double latitude, double gap_reach,
+                                               stericol_working_levels *levels);
 void stericol_working_levels_free(stericol_working_levels *levels);
 /* The standard ocean at a pressure, in the equation's own kinds. */
 void stericol_standard_ocean(const stericol_water *water, double pressure, double *salinity,
@@ -114,6 +119,8 @@ stericol_status stericol_working_make(stericol_context *context, const stericol_
                                       const stericol_column_options *options, double sea_floor,
                                       stericol_working *working);
 void stericol_working_free(stericol_working *working);
+/* The gap at which the column ends; NULL where it ends for another reason. */
+const stericol_working_gap *stericol_working_ending_gap(const stericol_working *working);
 /* A height of the standard ocean's anomaly (single) as geopotential, m2/s2. */
 double stericol_working_geopotential(const stericol_working *working, double height);
 

@@ -94,7 +94,9 @@ typedef struct follower {
     size_t next; /* the first row at or below the place asked for last */
 } follower;
 
-double stericol_working_gap_reach(double asked, double depth)
+/* How wide a gap is bridged below a sample at `depth`, all m: `asked`, or where that is NaN the default rule
+   of --gap-reach. */
+static double bridged_at(double asked, double depth)
 {
     return isnan(asked) ? fmin(fmax(50.0 + 0.225 * depth, 50.0), 500.0) : asked;
 }
@@ -103,7 +105,7 @@ static bool is_bridged(const follower *f, size_t upper, size_t lower)
 {
     const double depth = f->table->depth[upper];
 
-    return f->table->depth[lower] - depth <= stericol_working_gap_reach(f->gap_reach, depth);
+    return f->table->depth[lower] - depth <= bridged_at(f->gap_reach, depth) + one_level;
 }
 
 static void state_at(follower *f, double place, double *salinity, double *temperature)
@@ -154,6 +156,68 @@ static void merge_levels(const stericol_working_table tables[2], stericol_workin
     }
 }
 
+/* ---- gaps ---- */
+
+static const stericol_working_gap no_gap = {(double)NAN, (double)NAN, (double)NAN, 0.0};
+
+/* Looks at the spacings of the rows at which all `series` have values and which reach into from..to, m. */
+static void look_for_gaps(const double *depth, const double *const *series, size_t series_count, size_t count,
+                          double from, double to, double gap_reach, stericol_working_gap *gap)
+{
+    double above = (double)NAN;
+
+    for (size_t i = 0; i < count; i++) {
+        const double width = depth[i] - above;
+        bool valid = true;
+
+        for (size_t s = 0; s < series_count; s++)
+            valid = valid && isfinite(series[s][i]);
+        if (!valid)
+            continue;
+        if (!isnan(above) && depth[i] > from && above < to) {
+            gap->bridging = fmax(gap->bridging, ceil(width - one_level));
+            if (width > bridged_at(gap_reach, above) + one_level && !(gap->upper <= above)) {
+                gap->upper = above;
+                gap->lower = depth[i];
+                gap->allowed = bridged_at(gap_reach, above);
+            }
+        }
+        above = depth[i];
+    }
+}
+
+/* Gaps of the tables themselves come first: between common samples they look wider than they are. */
+static void find_gap_of_pair(const stericol_working_table tables[2], double gap_reach,
+                             stericol_working_levels *levels)
+{
+    const double *const all[] = {levels->salinity[0], levels->temperature[0], levels->salinity[1],
+                                 levels->temperature[1]};
+    double from = 0.0, to = (double)INFINITY;
+
+    for (size_t e = 0; e < 2; e++) {
+        size_t first = 0, last = tables[e].count;
+
+        while (first < last && !is_valid(&tables[e], first))
+            first++;
+        while (last > first && !is_valid(&tables[e], last - 1))
+            last--;
+        if (first < last) {
+            from = fmax(from, tables[e].depth[first]);
+            to = fmin(to, tables[e].depth[last - 1]);
+        }
+    }
+    levels->gap = no_gap;
+    for (size_t e = 0; e < 2; e++) {
+        const double *const own[] = {tables[e].salinity, tables[e].temperature};
+
+        look_for_gaps(tables[e].depth, own, 2, tables[e].count, from, to, gap_reach, &levels->gap);
+    }
+    if (isnan(levels->gap.upper))
+        look_for_gaps(levels->depth, all, 4, levels->count, 0.0, (double)INFINITY, gap_reach, &levels->gap);
+}
+
+/* ---- */
+
 stericol_status stericol_working_levels_pair(stericol_session *session,
                                              const stericol_working_table tables[2], double latitude,
                                              double gap_reach, stericol_working_levels *levels)
@@ -177,6 +241,7 @@ stericol_status stericol_working_levels_pair(stericol_session *session,
         for (size_t i = 0; i < levels->count; i++)
             state_at(&f, place[i], &levels->salinity[e][i], &levels->temperature[e][i]);
     }
+    find_gap_of_pair(tables, gap_reach, levels);
     if (tables[0].coordinate != tables[1].coordinate)
         stericol_notice(session->context, STERICOL_NOTE, tables[1].path, NULL,
                         "is written in %s and converted to the other table's %s",
@@ -206,8 +271,10 @@ void stericol_standard_ocean(const stericol_water *water, double pressure, doubl
 }
 
 stericol_status stericol_working_levels_single(stericol_session *session, const stericol_working_table *table,
-                                               double latitude, stericol_working_levels *levels)
+                                               double latitude, double gap_reach,
+                                               stericol_working_levels *levels)
 {
+    const double *const own[] = {table->salinity, table->temperature};
     const size_t bytes = table->count * sizeof *levels->depth;
     stericol_status status = new_levels(session, table, latitude, table->count, levels);
 
@@ -223,5 +290,7 @@ stericol_status stericol_working_levels_single(stericol_session *session, const 
     for (size_t i = 0; i < table->count; i++)
         stericol_standard_ocean(&levels->water, levels->pressure[i], &levels->salinity[0][i],
                                 &levels->temperature[0][i]);
+    levels->gap = no_gap;
+    look_for_gaps(table->depth, own, 2, table->count, 0.0, (double)INFINITY, gap_reach, &levels->gap);
     return STERICOL_OK;
 }

@@ -285,8 +285,8 @@ static void add_single_parts(stericol_text *text, const stericol_working *w)
         if (isfinite(w->rows[i].part[STERICOL_COLUMN_TOTAL]))
             whole += stericol_working_geopotential(w, w->rows[i].part[STERICOL_COLUMN_TOTAL]);
     stericol_text_add(text, "\nGeopotential anomaly of each interval; its sum from the top to the interval's "
-                            "lower end; that of\nthe water below its upper end (1 dynamic metre is 10 "
-                            "m2/s2); steric height of the interval\n");
+                            "lower end; dynamic\nheight of the interval's upper end above the deepest level "
+                            "(1 dynamic metre is 10 m2/s2); steric\nheight of the interval\n");
     add_headings(text, headings, sizeof headings / sizeof *headings);
     for (size_t i = 0; i + 1 < w->row_count; i++) {
         const double height = w->rows[i].part[STERICOL_COLUMN_TOTAL];

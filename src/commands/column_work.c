@@ -57,6 +57,8 @@ static stericol_status sweep_levels(const job *j, const stericol_layer *layers, 
     options.layer_count = layer_count;
     options.coordinate = levels->coordinate;
     options.cast = true;
+    if (!isnan(options.gap_reach))
+        options.gap_reach += one_depth; /* a gap as wide as that is bridged, however its depths round */
     options.levels = to - from;
     status = stericol_sweep_new(j->context, &options, 1, 1, &levels->latitude,
                                 isnan(j->sea_floor) ? NULL : &j->sea_floor, sweep);
@@ -144,17 +146,45 @@ static stericol_status find_extent(job *j)
     return STERICOL_OK;
 }
 
+const stericol_working_gap *stericol_working_ending_gap(const stericol_working *w)
+{
+    const stericol_working_gap *gap = &w->levels->gap;
+
+    if (w->flag != STERICOL_COLUMN_GAP && w->flag != STERICOL_COLUMN_UNEQUAL)
+        return NULL;
+    return gap->upper <= w->reached + one_depth && gap->lower > w->reached ? gap : NULL;
+}
+
+static stericol_status refuse_gap(const job *j)
+{
+    const stericol_working_gap *gap = &j->levels->gap;
+    stericol_text remedy = {0};
+    stericol_status status;
+
+    stericol_text_format(&remedy, "use --gap-reach %.0f, which bridges all", gap->bridging);
+    status = stericol_fail(j->context, STERICOL_NOTHING, NULL, NULL, stericol_text_string(&remedy),
+                           "no layer is complete: samples at %g and %g m are %g m apart, and %g m is allowed "
+                           "there",
+                           gap->upper, gap->lower, gap->lower - gap->upper, gap->allowed);
+    stericol_text_free(&remedy);
+    return status;
+}
+
 static stericol_status check_layers(const job *j)
 {
     const stericol_working *w = j->working;
+    bool above = w->top > 0.0; /* every layer begins above the data */
 
-    for (size_t k = 0; k < w->layer_count; k++)
+    for (size_t k = 0; k < w->layer_count; k++) {
         if (w->sums[k].state == STERICOL_LAYER_COMPLETE)
             return STERICOL_OK;
+        above = above && w->sums[k].upper < w->top;
+    }
+    if (!above && stericol_working_ending_gap(w) != NULL)
+        return refuse_gap(j);
     return stericol_fail(j->context, STERICOL_NOTHING, NULL, NULL,
-                         w->flag == STERICOL_COLUMN_GAP
-                             ? "bridge wider gaps with --gap-reach, or ask for other --layers"
-                             : "ask for other --layers, or carry the top level further with --surface-reach",
+                         above ? "ask for other --layers, or carry the top level further with --surface-reach"
+                               : "ask for other --layers",
                          "no layer lies wholly within the usable data, %g..%g m (%s)", w->top, w->reached,
                          stericol_column_flag_word(w->flag));
 }
@@ -255,10 +285,13 @@ static stericol_status make_rows(job *j)
     w->rows = stericol_new_array(levels->count + 2 * j->options->layer_count + 2, sizeof *w->rows);
     if (w->rows == NULL)
         return stericol_fail_memory(j->context, 0, "the working");
-    if (w->top < levels->depth[j->first])
+    const bool carried = w->top < levels->depth[j->first];
+
+    if (carried)
         add_water(j, STERICOL_ROW_CARRIED, 0.0, 0.0, j->first);
     for (size_t i = 0; i < levels->count; i++)
-        add_water(j, STERICOL_ROW_LEVEL, levels->depth[i], levels->pressure[i], i);
+        if (!carried || levels->depth[i] > one_depth) /* a level that one table alone has at the surface */
+            add_water(j, STERICOL_ROW_LEVEL, levels->depth[i], levels->pressure[i], i);
     add_end(j);
     for (size_t k = 0; k < j->options->layer_count; k++) {
         add_limits(j, j->options->layers[k].upper);
@@ -370,10 +403,12 @@ stericol_status stericol_working_make(stericol_context *context, const stericol_
 
     *working = (stericol_working){.levels = levels, .options = options};
     if (!find_samples(&j))
-        return stericol_fail(context, STERICOL_NOTHING, NULL, NULL,
-                             "check what the tables hold, and where they say NA",
-                             levels->single ? "no level has both temperature and salinity"
-                                            : "no level has temperature and salinity in both tables");
+        return isfinite(levels->gap.upper)
+                   ? refuse_gap(&j)
+                   : stericol_fail(context, STERICOL_NOTHING, NULL, NULL,
+                                   "check what the tables hold, and where they say NA",
+                                   levels->single ? "no level has both temperature and salinity"
+                                                  : "no level has temperature and salinity in both tables");
     status = sum_layers(&j);
     if (status == STERICOL_OK)
         status = find_extent(&j);

@@ -374,7 +374,7 @@ static void test_different_levels(void **state)
     result = run_line("column --earlier a.csv --later b.csv " LINEAR, *state);
     assert_exit(&result, 0);
     assert_holds(result.errors,
-                 "stericol: the tables have different levels: all levels of both are used, each "
+                 "stericol: note: the tables have different levels: all levels of both are used, each "
                  "table's salinity and temperature (absolute, conservative) linear between its own, "
                  "within its own range\n");
     assert_holds(result.errors,
@@ -399,14 +399,82 @@ static void test_gap(void **state)
     result = run_line("column --field a.txt", *state);
     assert_exit(&result, 0);
     assert_holds(result.errors,
-                 "stericol: warning: the column ends at 95 m: the next level is 105 m further down, "
-                 "and --gap-reach bridges 71.375 m\n");
+                 "stericol: warning: the column ends at 95 m: samples at 95 and 200 m are 105 m apart, and "
+                 "71.375 m is allowed there; --gap-reach 105 bridges all\n");
     assert_holds(result.output, "from 0.00 m to 95.00 m; the column ends: gap\n");
     run_free(&result);
-    result = run_line("column --field a.txt --gap-reach 106 --quiet", *state);
+    result = run_line("column --field a.txt --gap-reach 105 --quiet", *state);
     assert_exit(&result, 0);
     assert_string_equal(result.errors, "");
     assert_holds(result.output, "from 0.00 m to 200.00 m; the column ends: end_of_data\n");
+    run_free(&result);
+}
+
+/* A small table is coarser than the rule allows: 50 m at 0 m, 50 + 0.225 * 100 = 72.5 m at 100 m.  What the
+   message advises bridges all, of one table and of two whose levels differ. */
+static void test_coarse_tables(void **state)
+{
+    static const struct {
+        const char *epochs, *ends, *advice, *bridged;
+    } cases[] = {
+        {"--field a.txt",
+         "samples at 0 and 100 m are 100 m apart, and 50 m is allowed there; use --gap-reach 400, which "
+         "bridges all\n",
+         "--gap-reach 400", "from 0.00 m to 700.00 m; the column ends: end_of_data\n"},
+        {"--earlier a.txt --later b.txt",
+         "samples at 0 and 100 m are 100 m apart, and 50 m is allowed there; use --gap-reach 400, which "
+         "bridges all\n",
+         "--gap-reach 400", "from 0.00 m to 600.00 m; the column ends: unequal\n"},
+        /* The earlier table has no spacing above 50 m where both have data. */
+        {"--earlier d.txt --later b.txt",
+         "samples at 0 and 150 m are 150 m apart, and 50 m is allowed there; use --gap-reach 150, which "
+         "bridges all\n",
+         "--gap-reach 150", "from 0.00 m to 90.00 m; the column ends: unequal\n"},
+        /* No common sample at all. */
+        {"--earlier e.txt --later b.txt",
+         "samples at 0 and 150 m are 150 m apart, and 50 m is allowed there; use --gap-reach 150, which "
+         "bridges all\n",
+         "--gap-reach 150 --surface-reach 40", "from 0.00 m to 80.00 m; the column ends: unequal\n"},
+    };
+
+    run_write_file(*state, "a.txt", "depth ct sa\n0 20 35\n100 15 35\n300 10 35\n700 6 35\n");
+    run_write_file(*state, "b.txt", "depth ct sa\n0 21 35\n150 15 35\n400 10 35\n600 7 35\n");
+    run_write_file(*state, "d.txt", "depth ct sa\n0 20 35\n45 16 35\n90 15 35\n");
+    run_write_file(*state, "e.txt", "depth ct sa\n40 20 35\n80 15 35\n");
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        char line[160];
+        run_result result;
+
+        snprintf(line, sizeof line, "column %s", cases[i].epochs);
+        result = run_line(line, *state);
+        assert_exit(&result, 1);
+        assert_holds(result.errors, "stericol: no layer is complete: ");
+        assert_holds(result.errors, cases[i].ends);
+        run_free(&result);
+        snprintf(line, sizeof line, "column %s %s", cases[i].epochs, cases[i].advice);
+        result = run_line(line, *state);
+        assert_exit(&result, 0);
+        assert_holds(result.output, cases[i].bridged);
+        run_free(&result);
+    }
+}
+
+/* A sea floor within --bottom-reach (500 m) is reached, one below it is not: no water is made up. */
+static void test_sea_floor(void **state)
+{
+    run_result result;
+
+    run_write_file(*state, "a.txt", "depth ct sa\n0 20 35\n40 18 35\n95 15 35\n");
+    result = run_line("column --field a.txt --sea-floor 595", *state);
+    assert_exit(&result, 0);
+    assert_null(strstr(result.errors, "warning"));
+    assert_holds(result.output, "from 0.00 m to 595.00 m; the column ends: sea_floor\n");
+    run_free(&result);
+    result = run_line("column --field a.txt --sea-floor 596", *state);
+    assert_exit(&result, 0);
+    assert_holds(result.errors, "stericol: warning: the column ends at 95 m: the sea floor is 501 m further "
+                                "down, and --bottom-reach bridges 500 m\n");
+    assert_holds(result.output, "from 0.00 m to 95.00 m; the column ends: end_of_data\n");
     run_free(&result);
 }
 
@@ -512,88 +580,93 @@ static void check_refused(const char *folder, const char *table, const char *opt
     run_free(&result);
 }
 
+#define FIELD "--field t.txt --quiet"
+
+static const struct refusal {
+    const char *table, *options;
+    int code;
+    const char *message;
+} refusals[] = {
+    {NULL, "--field none.txt", 3,
+     "stericol: none.txt: cannot be opened (No such file or directory); check its name and its rights\n"},
+    {"depth temp\n0 1\n", FIELD, 3,
+     "stericol: t.txt: has no column of salinity; name it salinity or practical_salinity, "
+     "reference_salinity, sa "
+     "or absolute_salinity\n"},
+    {"depth sal\n0 35\n", FIELD, 3,
+     "stericol: t.txt: has no column of temperature; name it temperature (in situ), theta or "
+     "potential_temperature, ct or conservative_temperature\n"},
+    {"level temp sal\n0 1 35\n", FIELD, 3,
+     "stericol: t.txt: has no column of depth or pressure; name it depth or pressure\n"},
+    {"depth temp theta sal\n0 1 1 35\n", FIELD, 3,
+     "stericol: t.txt: has two columns of temperature, 'temp' and 'theta'; say which kind to take with "
+     "--temperature-kind, or take one out\n"},
+    {"depth,temp,salinity [g/kg]\n0,1,35\n", FIELD, 3,
+     "stericol: t.txt: salinity: is in g/kg, so it may be absolute or reference salinity; say which with "
+     "--salinity-kind, or name it absolute_salinity or reference_salinity\n"},
+    {"depth temp sal\n0 1 35\n10 1 35\n10 1 35\n", FIELD, 3,
+     "stericol: t.txt: line 4, column 'depth': 10 m does not lie below the row before (10 m); order the "
+     "rows from "
+     "the surface down, each level once\n"},
+    {"p temp sal\n100 1 35\n10 1 35\n", FIELD, 3,
+     "stericol: t.txt: line 3, column 'p': 10 dbar does not lie below the row before (100 dbar); order "
+     "the rows "
+     "from the surface down, each level once\n"},
+    {"z temp sal\n-10 1 35\n", FIELD, 3,
+     "stericol: t.txt: line 2, column 'z': -10 m lies above the surface; write depths as positive "
+     "numbers, 0 at "
+     "the surface\n"},
+    {"depth temp sal\nNA 1 35\n", FIELD, 3,
+     "stericol: t.txt: line 2, column 'depth': there is no value; give it, or take the row out\n"},
+    {"depth temp sal\n20000 1 35\n", FIELD, 3,
+     "stericol: t.txt: line 2, column 'depth': 20000 m is deeper than any sea; check the unit, and name "
+     "it in the "
+     "header\n"},
+    {"depth temp sal\n0 290 35\n", FIELD, 3,
+     "stericol: t.txt: line 2, column 'temp': 290 degC is not within -4..45; if it is kelvin, name the "
+     "unit in "
+     "the header: temperature [K]\n"},
+    {"depth temp sal\n0 10 35\n# bottle\n10 9 -999\n", FIELD, 3,
+     "stericol: t.txt: line 4, column 'sal': -999 is not within 0..45; check the column and its unit; "
+     "write NA "
+     "where there is no value\n"},
+    {"depth [m] temp sal\n0 10 35\n", "--field t.txt --quiet --vertical-unit dbar", 3,
+     "stericol: t.txt: depth: is in m by its header, but --vertical-unit says dbar; leave "
+     "--vertical-unit out, or "
+     "correct the header\n"},
+    {"depth temp sal\n0 NA 35\n10 9 NA\n", FIELD, 1,
+     "stericol: no level has both temperature and salinity; check what the tables hold, and where they "
+     "say NA\n"},
+    {"depth temp sal\n0 10 35\n900 3 35\n", FIELD, 1,
+     "stericol: no layer is complete: samples at 0 and 900 m are 900 m apart, and 50 m is allowed there; use "
+     "--gap-reach 900, which bridges all\n"},
+    {"depth temp sal\n0 10 35\n10 9 35\n", "--field t.txt --quiet --layers 0..700", 1,
+     "stericol: no layer lies wholly within the usable data, 0..10 m (end_of_data); ask for other "
+     "--layers\n"},
+    {"depth temp sal\n30 10 35\n40 9 35\n900 3 35\n", FIELD, 1,
+     "stericol: no layer lies wholly within the usable data, 30..40 m (gap); ask for other --layers, or "
+     "carry the top level further with --surface-reach\n"},
+    {"depth temp sal\n0 10 35\n10 9 35\n", "--field t.txt --vertical cells", 2,
+     "stericol: --vertical: cells needs the limits of cells, and a text table has samples; take linear, "
+     "steffen "
+     "or akima\n"},
+    {NULL, "--field t.txt --attribution earlier", 2,
+     "stericol: --attribution: has no meaning for one table: there is no change to share out; leave it "
+     "out, or "
+     "give --earlier and --later\n"},
+    {NULL, "--field t.txt --reference-density 1027", 2,
+     "stericol: --reference-density: has no meaning for one table, whose height is geopotential over "
+     "gravity; "
+     "leave it out, or give --earlier and --later\n"},
+    {NULL, "--earlier t.txt --later ./t.txt", 2,
+     "stericol: both epochs are the same table; name another for one of them, or give one alone with "
+     "--field\n"},
+};
+
 static void test_refused(void **state)
 {
-    static const char field[] = "--field t.txt --quiet";
-    static const struct {
-        const char *table, *options;
-        int code;
-        const char *message;
-    } cases[] = {
-        {NULL, "--field none.txt", 3,
-         "stericol: none.txt: cannot be opened (No such file or directory); check its name and its rights\n"},
-        {"depth temp\n0 1\n", field, 3,
-         "stericol: t.txt: has no column of salinity; name it salinity or practical_salinity, "
-         "reference_salinity, sa "
-         "or absolute_salinity\n"},
-        {"depth sal\n0 35\n", field, 3,
-         "stericol: t.txt: has no column of temperature; name it temperature (in situ), theta or "
-         "potential_temperature, ct or conservative_temperature\n"},
-        {"level temp sal\n0 1 35\n", field, 3,
-         "stericol: t.txt: has no column of depth or pressure; name it depth or pressure\n"},
-        {"depth temp theta sal\n0 1 1 35\n", field, 3,
-         "stericol: t.txt: has two columns of temperature, 'temp' and 'theta'; say which kind to take with "
-         "--temperature-kind, or take one out\n"},
-        {"depth,temp,salinity [g/kg]\n0,1,35\n", field, 3,
-         "stericol: t.txt: salinity: is in g/kg, so it may be absolute or reference salinity; say which with "
-         "--salinity-kind, or name it absolute_salinity or reference_salinity\n"},
-        {"depth temp sal\n0 1 35\n10 1 35\n10 1 35\n", field, 3,
-         "stericol: t.txt: line 4, column 'depth': 10 m does not lie below the row before (10 m); order the "
-         "rows from "
-         "the surface down, each level once\n"},
-        {"p temp sal\n100 1 35\n10 1 35\n", field, 3,
-         "stericol: t.txt: line 3, column 'p': 10 dbar does not lie below the row before (100 dbar); order "
-         "the rows "
-         "from the surface down, each level once\n"},
-        {"z temp sal\n-10 1 35\n", field, 3,
-         "stericol: t.txt: line 2, column 'z': -10 m lies above the surface; write depths as positive "
-         "numbers, 0 at "
-         "the surface\n"},
-        {"depth temp sal\nNA 1 35\n", field, 3,
-         "stericol: t.txt: line 2, column 'depth': there is no value; give it, or take the row out\n"},
-        {"depth temp sal\n20000 1 35\n", field, 3,
-         "stericol: t.txt: line 2, column 'depth': 20000 m is deeper than any sea; check the unit, and name "
-         "it in the "
-         "header\n"},
-        {"depth temp sal\n0 290 35\n", field, 3,
-         "stericol: t.txt: line 2, column 'temp': 290 degC is not within -4..45; if it is kelvin, name the "
-         "unit in "
-         "the header: temperature [K]\n"},
-        {"depth temp sal\n0 10 35\n# bottle\n10 9 -999\n", field, 3,
-         "stericol: t.txt: line 4, column 'sal': -999 is not within 0..45; check the column and its unit; "
-         "write NA "
-         "where there is no value\n"},
-        {"depth [m] temp sal\n0 10 35\n", "--field t.txt --quiet --vertical-unit dbar", 3,
-         "stericol: t.txt: depth: is in m by its header, but --vertical-unit says dbar; leave "
-         "--vertical-unit out, or "
-         "correct the header\n"},
-        {"depth temp sal\n0 NA 35\n10 9 NA\n", field, 1,
-         "stericol: no level has both temperature and salinity; check what the tables hold, and where they "
-         "say NA\n"},
-        {"depth temp sal\n0 10 35\n900 3 35\n", field, 1,
-         "stericol: no layer lies wholly within the usable data, 0..0 m (gap); bridge wider gaps with "
-         "--gap-reach, or "
-         "ask for other --layers\n"},
-        {"depth temp sal\n0 10 35\n10 9 35\n", "--field t.txt --quiet --layers 0..700", 1,
-         "stericol: no layer lies wholly within the usable data, 0..10 m (end_of_data); ask for other "
-         "--layers, or "
-         "carry the top level further with --surface-reach\n"},
-        {"depth temp sal\n0 10 35\n10 9 35\n", "--field t.txt --vertical cells", 2,
-         "stericol: --vertical: cells needs the limits of cells, and a text table has samples; take linear, "
-         "steffen "
-         "or akima\n"},
-        {NULL, "--field t.txt --attribution earlier", 2,
-         "stericol: --attribution: has no meaning for one table: there is no change to share out; leave it "
-         "out, or "
-         "give --earlier and --later\n"},
-        {NULL, "--field t.txt --reference-density 1027", 2,
-         "stericol: --reference-density: has no meaning for one table, whose height is geopotential over "
-         "gravity; "
-         "leave it out, or give --earlier and --later\n"},
-    };
-
-    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++)
-        check_refused(*state, cases[i].table, cases[i].options, cases[i].code, cases[i].message);
+    for (size_t i = 0; i < sizeof refusals / sizeof *refusals; i++)
+        check_refused(*state, refusals[i].table, refusals[i].options, refusals[i].code, refusals[i].message);
     /* Kinds that differ, one of them only assumed. */
     run_write_file(*state, "u.txt", "depth theta sal\n0 10 35\n10 9 35\n");
     check_refused(
@@ -619,6 +692,8 @@ int main(void)
         cmocka_unit_test_setup_teardown(test_change_by_hand, make_folder, remove_folder),
         cmocka_unit_test_setup_teardown(test_different_levels, make_folder, remove_folder),
         cmocka_unit_test_setup_teardown(test_gap, make_folder, remove_folder),
+        cmocka_unit_test_setup_teardown(test_coarse_tables, make_folder, remove_folder),
+        cmocka_unit_test_setup_teardown(test_sea_floor, make_folder, remove_folder),
         cmocka_unit_test_setup_teardown(test_parts_add_up, make_folder, remove_folder),
         cmocka_unit_test_setup_teardown(test_refused, make_folder, remove_folder),
     };
