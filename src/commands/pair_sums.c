@@ -49,13 +49,17 @@ static void sum_layer_row(const sum_work *sum, stericol_region_totals *totals, s
             stericol_region_totals_add(totals, region, first + STERICOL_PAIR_SUM_INCOMPLETE, 1.0, 1.0);
 }
 
-/* Sea, as region_area counts it: by the sea floor, by the mask, or by any value on the first level. */
+/*
+ * Sea, as region_area counts it: by the sea floor, by the mask, or by any value on the first level.  Where
+ * there is a value there is water, though the sea floor's file may have land there: else more than all were
+ * covered.
+ */
 static bool is_sea(const sum_work *sum, size_t grid_at, size_t tile_at)
 {
     const stericol_pair *pair = sum->work->pair;
 
     if (pair->area_from_floor)
-        return pair->sea_floor[grid_at] > 0.0;
+        return pair->sea_floor[grid_at] > 0.0 || sum->tile->wet[tile_at] != 0;
     if (pair->area_from_mask)
         return sum->work->grid->dry[grid_at] == 0;
     return sum->tile->wet[tile_at] != 0;

@@ -201,10 +201,11 @@ static void describe_layout(stericol_session *session, const stericol_setup *set
         .coverage_start = dated_backwards ? stericol_epoch_first_date(later) : first,
         .coverage_end = dated_backwards ? stericol_epoch_last_date(setup->epochs[0]) : last,
         .cell_area_source = setup->cell_area_source,
-        .region_area_source = setup->pair.area_from_floor ? "cells with a sea floor in --bathymetry"
-                              : setup->pair.area_from_mask
-                                  ? "cells that --mask leaves"
-                                  : "cells with a value on the first level in either epoch",
+        .region_area_source =
+            setup->pair.area_from_floor
+                ? "cells with a sea floor in --bathymetry, or with a value on the first level"
+            : setup->pair.area_from_mask ? "cells that --mask leaves"
+                                         : "cells with a value on the first level in either epoch",
     };
 }
 

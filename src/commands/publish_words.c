@@ -171,20 +171,42 @@ static void add_profile(stericol_text *text, const char *path)
             &(stericol_cf_identity){.bytes = (unsigned long long)found.st_size, .changed = found.st_mtime});
 }
 
+/* A file that is not NetCDF: it has no id. */
+static void add_text_input(stericol_text *text, const char *role, const char *path)
+{
+    stericol_cf_identity identity = {0};
+    struct stat about;
+
+    if (stat(path, &about) == 0) {
+        identity.bytes = (unsigned long long)about.st_size;
+        identity.changed = (long long)about.st_mtime;
+    }
+    add_line(text, role, path, &identity);
+}
+
 /* Files that options name and no epoch holds. */
 static stericol_status add_other_inputs(stericol_session *session, stericol_text *text)
 {
-    static const char *const options[] = {"bathymetry", "regions"};
+    static const char *const options[] = {"bathymetry", "mask",        "cell-area", "thickness",
+                                          "regions",    "coordinates", "profile"};
 
     for (size_t o = 0; o < sizeof options / sizeof options[0]; o++) {
         size_t count;
-        const char *const *paths = stericol_settings_list(session->settings, options[o], &count);
+        const char *const *paths;
 
+        if (stericol_command_option(stericol_settings_command(session->settings), options[o]) == NULL)
+            continue;
+        paths = stericol_settings_list(session->settings, options[o], &count);
         for (size_t i = 0; i < count; i++) {
             stericol_cf_file *file;
             stericol_cf_identity identity;
-            stericol_status status = stericol_cf_open(session->context, paths[i], &file);
+            stericol_status status;
 
+            if (strcmp(options[o], "profile") == 0) {
+                add_text_input(text, options[o], paths[i]);
+                continue;
+            }
+            status = stericol_cf_open(session->context, paths[i], &file);
             if (status != STERICOL_OK)
                 return status;
             identity = stericol_cf_identity_of(file);

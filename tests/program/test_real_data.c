@@ -430,7 +430,8 @@ static const char *write_every_fifth(const char *name)
     const struct {
         const char *variable;
         double *values;
-    } axes[] = {{"YAXLEVITR", latitude}, {"XAXLEVITR", longitude}, {"ZAXLEVITR", depth}, {"ZAXLEVITRedges", edges}};
+    } axes[] = {
+        {"YAXLEVITR", latitude}, {"XAXLEVITR", longitude}, {"ZAXLEVITR", depth}, {"ZAXLEVITRedges", edges}};
     sea of = sea_plain();
     sea_form form = form_plain();
     int file, variable;
@@ -482,8 +483,9 @@ static void test_steric_change_by_both_laws(void **state)
     for (size_t e = 0; e < 2; e++) {
         const char *output = in_folder(e == 0 ? "law_polynomial.nc" : "law_gibbs.nc");
 
-        run_well("scenario", "--field", field_path, "--profile",
-                 in_folder("by_depth.txt"), "--equation", laws[e], "--output", output, "--replace");
+        run_well("scenario", "--field", field_path, "--profile", in_folder("by_depth.txt"), "--equation",
+                 laws[e], "--output", output, "--replace");
+        assert_non_null(strstr(file_text(output, "inputs"), "profile: ")); /* the table is an input too */
         map[e] = read_field(output, "steric_height_change");
     }
     assert_int_equal(map[0].count, map[1].count);
