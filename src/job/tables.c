@@ -128,7 +128,7 @@ static const stericol_option profile = {.name = "profile",
                                         .group = field_heading,
                                         .help = "Text table with the columns depth (m), warming (K) and "
                                                 "freshening (g/kg): linear between its rows, constant "
-                                                "above the first and below the last"};
+                                                "above the first and, down to the sea floor, below the last"};
 static const stericol_option mean_of_field = {
     .name = "mean",
     .metavar = "state|integral",
@@ -427,7 +427,8 @@ static const stericol_option bottom_reach = {
     .unit = "m",
     .initial_words = "500 with --bathymetry",
     .group = vertical_heading,
-    .help = "How far the deepest sample is carried down towards the sea floor"};
+    .help = "How far below the deepest sample the sea floor may lie for the sample to be carried down to it; "
+            "above a floor further down the column ends with the data"};
 static const stericol_option bottom_reach_of_column = {
     .name = "bottom-reach",
     .metavar = "M",
@@ -437,7 +438,8 @@ static const stericol_option bottom_reach_of_column = {
     .unit = "m",
     .initial_words = "500 with --sea-floor",
     .group = vertical_heading,
-    .help = "How far the deepest sample is carried down towards the sea floor"};
+    .help = "How far below the deepest sample the sea floor may lie for the sample to be carried down to it; "
+            "above a floor further down the column ends with the data"};
 
 /* ---- regions ---- */
 
@@ -473,7 +475,8 @@ static const stericol_option fill_coverage = {
     .name = "fill-coverage",
     .kind = STERICOL_OPTION_SWITCH,
     .group = regions_heading,
-    .help = "Also write sums scaled up from the area that has data to the region's whole sea area"};
+    .help = "Also write sums scaled up from the area that has data to the region's whole sea area: into the "
+            "result file, and with --table csv and json"};
 
 /* ---- results and running ---- */
 
@@ -635,11 +638,12 @@ static const stericol_rule change_rules[] = {
     RUNNING_RULES};
 static const stericol_example change_examples[] = {
     {"Two files, maps and totals into one result",
-     "stericol change --earlier kolva_1998.nc --later kolva_2018.nc "
+     "stericol change --earlier velmar_1990s.nc --later velmar_2010s.nc "
      "--output change.nc"},
     {"Two windows of one series, three layers, one region",
-     "stericol change --earlier kolva.nc --later kolva.nc --earlier-time 1995..1999 --later-time 2015..2019 "
-     "--layers 0..700,700..2000,2000..bottom --region Inner_Bight=-20,40,-5,55 --output change.nc"}};
+     "stericol change --earlier velmar.nc --later velmar.nc --earlier-time 1995..1999 --later-time "
+     "2015..2019 "
+     "--layers 0..700,700..2000,2000..bottom --region Western_Basin=-169,30,-157,44.25 --output change.nc"}};
 
 /* ---- inspect ---- */
 
@@ -667,9 +671,9 @@ static const stericol_rule inspect_rules[] = {
     {STERICOL_RULE_EXCLUDES, "field-time", "field-step", NULL, choose_one},
     RUNNING_RULES};
 static const stericol_example inspect_examples[] = {
-    {"What a file holds and how it would be read", "stericol inspect kolva_1998.nc"},
+    {"What a file holds and how it would be read", "stericol inspect velmar_1990s.nc"},
     {"The same with a choice made",
-     "stericol inspect kolva_run.nc --select member=3 --salinity-kind practical"}};
+     "stericol inspect velmar_run.nc --select member=3 --salinity-kind practical"}};
 
 /* ---- column ---- */
 
@@ -708,7 +712,7 @@ static const stericol_rule column_rules[] = {
     LINEAR_RULES};
 static const stericol_example column_examples[] = {
     {"The working of a change, level by level",
-     "stericol column --earlier station_1998.txt --later station_2018.txt --latitude 52"},
+     "stericol column --earlier station_1998.txt --later station_2018.txt --latitude 38.4"},
     {"One table alone, as numbers for another program",
      "stericol column --field station_1998.txt --table csv"}};
 
@@ -778,9 +782,9 @@ static const stericol_rule scenario_rules[] = {
     OUTPUT_RULE,
     RUNNING_RULES};
 static const stericol_example scenario_examples[] = {
-    {"One kelvin everywhere", "stericol scenario --field kolva_2018.nc --warming 1 --output warmer.nc"},
+    {"One kelvin everywhere", "stericol scenario --field velmar_2010s.nc --warming 1 --output warmer.nc"},
     {"Warming and freshening by depth",
-     "stericol scenario --field kolva_2018.nc --profile by_depth.txt --output scenario.nc"}};
+     "stericol scenario --field velmar_2010s.nc --profile warming_by_depth.txt --output scenario.nc"}};
 
 /* ---- the commands ---- */
 
