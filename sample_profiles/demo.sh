@@ -69,7 +69,7 @@ Change, 1990s to 2010s (heights in mm, heat in ZJ):
 $(cat change.txt)
 
 covered is the share of the sea area whose columns count; the rows "all" count those in which every layer is complete.
-In 16 columns of the eastern basin the 2010s lack data below 600 m, as the warnings above say.
+In 16 columns of the eastern basin the 2010s lack data below 600 m: that is what the warnings above tell.
 
 Scenario:
 
