@@ -460,9 +460,10 @@ static stericol_status refuse_nothing(const stericol_pair_work *work)
     }
     return stericol_fail(
         work->context, STERICOL_NOTHING, last.file, last.name,
-        "compare what the files hold with stericol inspect, and look at the layers and times",
-        work->epoch_count > 1 ? "no column could be used: no depth asked for has values in both epochs"
-                              : "no column could be used: no depth asked for has values");
+        "compare what the files hold with stericol inspect, and look at the layers, times and reaches",
+        work->epoch_count > 1 ? "no column could be used: none holds both epochs over a whole layer"
+                              : "no column could be used: none holds, over a whole layer, water that the "
+                                "scenario leaves possible");
 }
 
 stericol_status stericol_pair_run(stericol_context *context, stericol_executor *executor,

@@ -100,6 +100,14 @@ typedef struct stericol_pair_piece {
 } stericol_pair_piece;
 void stericol_pair_convert_piece(const stericol_pair_work *work, size_t epoch,
                                  const stericol_pair_piece *piece, double *salinity, double *temperature);
+/*
+ * The scenario's state from the field's: converted temperature and salinity, [count]; what the scenario makes
+ * impossible becomes infinite.  The changed arrays may be the given ones.  Returns how many it made
+ * impossible.
+ */
+size_t stericol_pair_change_piece(const stericol_pair_work *work, const stericol_pair_piece *piece,
+                                  const double *salinity, const double *temperature, double *changed_salinity,
+                                  double *changed_temperature);
 enum { STERICOL_PAIR_STRIP = 512 };
 /* Calls `act` for the pieces that make up the columns from..to of one level of a slab. */
 typedef void stericol_pair_act(void *argument, const stericol_pair_piece *piece, size_t index);

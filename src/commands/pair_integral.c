@@ -63,6 +63,12 @@ static void release(integral_work *work)
     }
 }
 
+/* Which epoch is read: a scenario's second state is its first, changed member by member. */
+static size_t read_epoch(const integral_work *work)
+{
+    return work->slab->work->pair->kind == STERICOL_PAIR_SCENARIO ? 0 : work->epoch;
+}
+
 static void set_reference(integral_work *work, size_t room)
 {
     const stericol_pair_slab *slab = work->slab;
@@ -141,11 +147,14 @@ static void add_piece(void *argument, const stericol_pair_piece *piece, size_t i
     integral_work *work = ((member_piece *)argument)->work;
     const stericol_pair_slab *slab = work->slab;
     size_t at = ((member_piece *)argument)->level * slab->count + index;
-    double length =
-        stericol_epoch_member_at(slab->work->pair->epochs[work->epoch].epoch, work->member)->length;
+    size_t epoch = read_epoch(work);
+    double length = stericol_epoch_member_at(slab->work->pair->epochs[epoch].epoch, work->member)->length;
     double part[PARTS][STERICOL_PAIR_STRIP];
 
-    stericol_pair_convert_piece(slab->work, work->epoch, piece, work->salinity + at, work->temperature + at);
+    stericol_pair_convert_piece(slab->work, epoch, piece, work->salinity + at, work->temperature + at);
+    if (work->epoch != epoch)
+        (void)stericol_pair_change_piece(slab->work, piece, work->salinity + at, work->temperature + at,
+                                         work->salinity + at, work->temperature + at);
     parts_of_member(slab->work, piece, work->reference_salinity + at, work->reference_temperature + at,
                     work->salinity + at, work->temperature + at, part);
     for (size_t i = 0; i < piece->count; i++) {
@@ -193,7 +202,7 @@ static void close_month(integral_work *work, size_t room, double month_weight)
 static stericol_status average_epoch(integral_work *work, size_t room)
 {
     stericol_pair_slab *slab = work->slab;
-    const stericol_pair_epoch *source = &slab->work->pair->epochs[work->epoch];
+    const stericol_pair_epoch *source = &slab->work->pair->epochs[read_epoch(work)];
     size_t members = stericol_epoch_member_count(source->epoch);
     bool reads_salinity = source->salinity_source == STERICOL_SALINITY_FROM_FILE;
     double least = slab->work->pair->least_times * (double)members;

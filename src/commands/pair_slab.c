@@ -232,9 +232,9 @@ static void scenario_at(const stericol_scenario_profile *profile, double depth, 
     *freshening = profile->freshening[i - 1] + share * (profile->freshening[i] - profile->freshening[i - 1]);
 }
 
-static size_t change_piece(const stericol_pair_work *work, const stericol_pair_piece *piece,
-                           const double *salinity, const double *temperature, double *changed_salinity,
-                           double *changed_temperature)
+size_t stericol_pair_change_piece(const stericol_pair_work *work, const stericol_pair_piece *piece,
+                                  const double *salinity, const double *temperature, double *changed_salinity,
+                                  double *changed_temperature)
 {
     double warming = 0.0, freshening = 0.0;
     size_t rejected = 0;
@@ -320,8 +320,8 @@ static void convert_piece_of_slab(void *argument, const stericol_pair_piece *pie
         stericol_pair_convert_piece(work, e, piece, slab->salinity[e] + at, slab->temperature[e] + at);
     if (work->pair->kind == STERICOL_PAIR_SCENARIO)
         work->counters[task->worker].rejected +=
-            change_piece(work, piece, slab->salinity[0] + at, slab->temperature[0] + at,
-                         slab->salinity[1] + at, slab->temperature[1] + at);
+            stericol_pair_change_piece(work, piece, slab->salinity[0] + at, slab->temperature[0] + at,
+                                       slab->salinity[1] + at, slab->temperature[1] + at);
     for (size_t e = 0; e < 2; e++)
         work->counters[task->worker].outside_equation +=
             count_outside(work->pair->column.water, piece, slab->salinity[e] + at, slab->temperature[e] + at);
