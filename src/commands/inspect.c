@@ -9,14 +9,14 @@
 typedef struct showing {
     const char *form;                /* text, csv or json */
     json_t *files, *set;             /* json only */
-    stericol_inspect_lines refusals; /* of all inspections */
+    stericol_inspect_lines refusals; /* the first of every inspection that has any */
     size_t refused;                  /* inspections with any */
 } showing;
 
 static void keep_refusals(showing *shown, const stericol_inspection *inspection)
 {
-    for (size_t i = 0; i < inspection->refusals.count; i++)
-        stericol_inspect_add_line(&shown->refusals, "refused", "%s", inspection->refusals.items[i].text);
+    if (inspection->refusals.count > 0)
+        stericol_inspect_add_line(&shown->refusals, "refused", "%s", inspection->refusals.items[0].text);
     shown->refused += inspection->refusals.count > 0;
 }
 
@@ -56,8 +56,9 @@ static stericol_status inspect(stericol_session *session, const stericol_paths *
         status = stericol_inspect_look(session, &inspection, index, whole);
     if (status == STERICOL_OK)
         status = stericol_inspect_judge(session, &inspection);
-    if (status == STERICOL_OK && (inspection.assumptions.failed || inspection.suspects.failed ||
-                                  inspection.suggestions.failed || inspection.refusals.failed))
+    if (status == STERICOL_OK &&
+        (inspection.assumptions.failed || inspection.suspects.failed || inspection.suggestions.failed ||
+         inspection.refusals.failed || inspection.conditions.failed))
         status = stericol_fail_memory(session->context, 0, "the inspection");
     if (status == STERICOL_OK)
         status = show(session, &inspection, shown);
@@ -70,21 +71,20 @@ static stericol_status print_json(stericol_session *session, showing *shown)
 {
     json_t *whole = json_pack("{s:O, s:O?, s:I}", "files", shown->files, "set", shown->set, "refused",
                               (json_int_t)shown->refused);
-    char *written = whole == NULL ? NULL : json_dumps(whole, JSON_INDENT(2));
+    stericol_text text = {0};
     stericol_status status;
 
+    stericol_inspect_write_json(whole, &text);
+    stericol_text_add(&text, "\n");
     json_decref(whole);
-    if (written == NULL)
-        return stericol_fail_memory(session->context, 0, "the inspection");
-    status = stericol_session_print(session, written);
-    if (status == STERICOL_OK)
-        status = stericol_session_print(session, "\n");
-    free(written);
+    status = text.failed ? stericol_fail_memory(session->context, 0, "the inspection")
+                         : stericol_session_print(session, stericol_text_string(&text));
+    stericol_text_free(&text);
     return status;
 }
 
-/* Every refusal is told on standard error; the last one stays in the context and is told when the session
- * ends. */
+/* One refusal of every file is told on standard error, all are in their place on the page; the last one stays
+ * in the context and is told when the session ends. */
 static stericol_status tell_refusals(stericol_session *session, const stericol_inspect_lines *refusals)
 {
     for (size_t i = 0; i < refusals->count; i++) {

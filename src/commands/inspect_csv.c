@@ -10,8 +10,8 @@ void stericol_inspect_csv_heading(stericol_text *text)
     for (int q = 0; q < STERICOL_INSPECT_QUANTITIES; q++) {
         const char *name = stericol_inspect_quantity_name((stericol_inspect_quantity)q);
 
-        stericol_text_format(text, ",%s_minimum,%s_mean,%s_maximum,%s_below,%s_above", name, name, name, name,
-                             name);
+        stericol_text_format(text, ",%s_minimum,%s_mean_of_cells,%s_maximum,%s_below,%s_above", name, name,
+                             name, name, name);
     }
     stericol_text_add(text, ",zeros,ends\r\n");
 }

@@ -4,6 +4,7 @@
 
 #include "stericol/column.h"
 
+#include <float.h>
 #include <math.h>
 #include <stdio.h>
 #include <string.h>
@@ -53,46 +54,132 @@ static void doubt_limits(stericol_inspection *inspection, stericol_inspect_quant
             stericol_inspect_chosen(inspection, quantity).name, below, above, limits, levels, grid->levels);
 }
 
-/* One value all over a level, or in a tenth of it at the end of the range: often a fill that is not declared.
- */
-static void doubt_repeats(stericol_inspection *inspection, stericol_inspect_quantity quantity)
+static const char *ending(size_t count)
+{
+    return count == 1 ? "" : "s";
+}
+
+static void doubt_constants(stericol_inspection *inspection, stericol_inspect_quantity quantity)
 {
     const stericol_grid *grid = stericol_epoch_grid(inspection->epoch);
-    const char *name = stericol_inspect_chosen(inspection, quantity).name;
-    size_t constant = 0, repeated = 0, first_constant = 0, first_repeated = 0;
+    size_t constant = 0, first = 0;
     char place[PLACE_ROOM];
 
     for (size_t k = 0; k < grid->levels; k++) {
         const stericol_inspect_range *range = &inspection->values.levels[k].range[quantity];
-        double share = REPEATED_SHARE * (double)range->valid;
 
-        if (range->valid < FEWEST)
+        if (range->valid >= FEWEST && !(range->high > range->low))
+            first = constant++ == 0 ? k : first;
+    }
+    if (constant == 0)
+        return;
+    name_place(inspection, first, place);
+    stericol_inspect_add_line(&inspection->suspects, "constant_level",
+                              "%s: one and the same value, %.9g, all over %zu level%s%s%s",
+                              stericol_inspect_chosen(inspection, quantity).name,
+                              inspection->values.levels[first].range[quantity].low, constant,
+                              ending(constant), constant == 1 ? ", at " : ", the first at ", place);
+}
+
+/* The least difference that the file's numbers can have near `value`, degC or the unit of salinity. */
+static double step_near(const stericol_session *session, const stericol_inspection *inspection,
+                        stericol_inspect_quantity quantity, double value)
+{
+    static const char *const units[STERICOL_INSPECT_QUANTITIES] = {"degree_Celsius", "1e-3"};
+    stericol_epoch_variable chosen = stericol_inspect_chosen(inspection, quantity);
+    const stericol_cf_variable *variable =
+        inspection->file == NULL ? NULL : stericol_cf_find(inspection->file, chosen.name, NULL);
+    const stericol_cf_attribute *factor =
+        variable == NULL ? NULL : stericol_cf_attribute_of(variable, "scale_factor");
+    double scale = 1.0, offset = 0.0, step;
+
+    if (chosen.unit == NULL ||
+        !stericol_cf_units_convert(session->units, chosen.unit, units[quantity], &scale, &offset)) {
+        scale = 1.0;
+        offset = 0.0;
+    }
+    /* Doubles too: mostly they were floats before. */
+    step = (double)FLT_EPSILON * fabs(value - offset);
+    if (factor != NULL && factor->numbers != NULL && factor->count > 0)
+        step = fmax(step, fabs(scale * factor->numbers[0]));
+    return step;
+}
+
+/*
+ * Whether `count` values at one end of a range are more alike than rounding makes them: many, and apart from
+ * the next one by far more than the numbers' own step, and by more than the rounding that a field of so
+ * narrow a range may have seen.  Deep water is so uniform that rounding alone makes its values alike.
+ */
+static bool is_cut_off(const stericol_inspect_range *range, unsigned long long count, double gap, double step)
+{
+    static const double steps = 10.0, coarse = 0.1, narrow = 50.0;
+    enum { MANY = 30 };
+
+    return count >= MANY && (double)count > REPEATED_SHARE * (double)range->valid && gap > steps * step &&
+           (gap > coarse || range->high - range->low > narrow * gap);
+}
+
+/* Values at the end of a level's range that are all the same: often a fill that is not declared. */
+static void doubt_repeats(const stericol_session *session, stericol_inspection *inspection,
+                          stericol_inspect_quantity quantity)
+{
+    const stericol_grid *grid = stericol_epoch_grid(inspection->epoch);
+    const stericol_inspect_range *shown = NULL;
+    size_t repeated = 0;
+    bool low = false;
+    char place[PLACE_ROOM];
+
+    for (size_t k = 0; k < grid->levels; k++) {
+        const stericol_inspect_range *range = &inspection->values.levels[k].range[quantity];
+        bool least = is_cut_off(range, range->at_low, range->next_low - range->low,
+                                step_near(session, inspection, quantity, range->low));
+
+        if (!least && !is_cut_off(range, range->at_high, range->high - range->next_high,
+                                  step_near(session, inspection, quantity, range->high)))
             continue;
-        if (!(range->high > range->low)) {
-            first_constant = constant++ == 0 ? k : first_constant;
-        } else if ((double)range->at_low >= share || (double)range->at_high >= share) {
-            first_repeated = repeated++ == 0 ? k : first_repeated;
+        if (repeated++ > 0)
+            continue;
+        shown = range;
+        low = least;
+        name_place(inspection, k, place);
+    }
+    if (shown == NULL)
+        return;
+    stericol_inspect_add_line(&inspection->suspects, "repeated_extreme",
+                              "%s: on %zu level%s more than a tenth of the values are exactly the level's %s "
+                              "(%.9g in %llu of %llu at %s): cut off, or a fill value that is not declared",
+                              stericol_inspect_chosen(inspection, quantity).name, repeated, ending(repeated),
+                              low ? "least" : "greatest", low ? shown->low : shown->high,
+                              low ? shown->at_low : shown->at_high, shown->valid, place);
+}
+
+static void doubt_frozen(stericol_inspection *inspection)
+{
+    const stericol_grid *grid = stericol_epoch_grid(inspection->epoch);
+    const stericol_inspect_level *coldest = NULL;
+    unsigned long long frozen = 0;
+    size_t levels = 0;
+    char place[PLACE_ROOM];
+
+    for (size_t k = 0; k < grid->levels; k++) {
+        const stericol_inspect_level *level = &inspection->values.levels[k];
+
+        frozen += level->frozen;
+        levels += level->frozen > 0;
+        if (level->frozen > 0 && (coldest == NULL || level->coldest < coldest->coldest)) {
+            coldest = level;
+            name_place(inspection, k, place);
         }
     }
-    if (constant > 0) {
-        name_place(inspection, first_constant, place);
-        stericol_inspect_add_line(&inspection->suspects, "constant_level",
-                                  "%s: one and the same value, %.9g, all over %zu levels, the first at %s",
-                                  name, inspection->values.levels[first_constant].range[quantity].low,
-                                  constant, place);
-    }
-    if (repeated > 0) {
-        const stericol_inspect_range *range = &inspection->values.levels[first_repeated].range[quantity];
-        bool low = (double)range->at_low >= REPEATED_SHARE * (double)range->valid;
-
-        name_place(inspection, first_repeated, place);
+    if (coldest != NULL)
         stericol_inspect_add_line(
-            &inspection->suspects, "repeated_extreme",
-            "%s: on %zu levels a tenth of the values or more are exactly the level's %s "
-            "(%.9g in %llu of %llu at %s): cut off, or a fill value that is not declared",
-            name, repeated, low ? "least" : "greatest", low ? range->low : range->high,
-            low ? range->at_low : range->at_high, range->valid, place);
-    }
+            &inspection->suspects, "below_freezing",
+            "%s: %llu value%s more than 0.5 K below the freezing point of sea water%s, on %zu of %zu levels, "
+            "the coldest %.6g degC at %s: no liquid water; they count as water all the same",
+            stericol_inspect_chosen(inspection, STERICOL_INSPECT_TEMPERATURE).name, frozen,
+            ending((size_t)frozen),
+            inspection->reads[STERICOL_INSPECT_SALINITY] ? " of their salinity" : " of salinity 35", levels,
+            grid->levels, coldest->coldest, place);
 }
 
 static void doubt_zeros(stericol_inspection *inspection)
@@ -219,11 +306,18 @@ static void suggest_vertical(stericol_inspection *inspection)
 static void suggest_salinity(stericol_inspection *inspection)
 {
     if (inspection->reads[STERICOL_INSPECT_TEMPERATURE] && !inspection->reads[STERICOL_INSPECT_SALINITY] &&
-        inspection->refusals.count == 0)
+        inspection->refusals.count == 0) {
+        bool alone = inspection->path != NULL && inspection->paths->count > 1;
+
+        stericol_inspect_add_line(
+            &inspection->conditions, "no_salinity",
+            "would be refused%s without --background-salinity or --constant-salinity: no salinity in %s",
+            alone ? " by itself" : "", inspection->path != NULL ? "this file" : "these files");
         stericol_inspect_add_line(
             &inspection->suggestions, "--background-salinity",
-            "a file with salinity beside it, or --background-salinity FILE, or "
-            "--constant-salinity VALUE: without salinity only the thermosteric part and heat");
+            "a file with salinity beside it; or --background-salinity FILE or --constant-salinity VALUE, "
+            "which give the thermosteric part and heat alone");
+    }
     if (inspection->salinity_alone)
         stericol_inspect_add_line(&inspection->suggestions, "temperature",
                                   "a file with temperature beside it: this one holds salinity alone");
@@ -267,8 +361,11 @@ stericol_status stericol_inspect_judge(stericol_session *session, stericol_inspe
     for (int q = 0; q < STERICOL_INSPECT_QUANTITIES; q++)
         if (inspection->reads[q]) {
             doubt_limits(inspection, (stericol_inspect_quantity)q);
-            doubt_repeats(inspection, (stericol_inspect_quantity)q);
+            doubt_constants(inspection, (stericol_inspect_quantity)q);
+            doubt_repeats(session, inspection, (stericol_inspect_quantity)q);
         }
+    if (inspection->reads[STERICOL_INSPECT_TEMPERATURE])
+        doubt_frozen(inspection);
     doubt_zeros(inspection);
     if (inspection->reads[STERICOL_INSPECT_SALINITY])
         doubt_fraction(inspection);

@@ -54,6 +54,7 @@ typedef struct stericol_inspect_range {
     unsigned long long below, above;    /* rejected, outside -4..45 degC or a salinity of 0..45 */
     double low, mean, high;             /* NaN where nothing is valid */
     unsigned long long at_low, at_high; /* how many hold exactly the least, the greatest value */
+    double next_low, next_high;         /* the least but one, the greatest but one; NaN where there is none */
     bool refused;                       /* the level cannot be read, or cannot be what it is called */
 } stericol_inspect_range;
 
@@ -62,6 +63,8 @@ typedef struct stericol_inspect_level {
     unsigned long long columns; /* with a value of every quantity that is there */
     unsigned long long zeros;   /* where every quantity is 0 */
     unsigned long long ends;    /* columns whose deepest level this is */
+    unsigned long long frozen;  /* temperatures that no sea water has without being ice */
+    double coldest;             /* of these; NaN where there is none */
     bool land_as_zeros;         /* a tenth of the cells or more are zeros: land */
 } stericol_inspect_level;
 
@@ -98,6 +101,7 @@ typedef struct stericol_inspection {
     stericol_inspect_axes axes;
     stericol_inspect_values values;
     stericol_inspect_lines assumptions, suspects, suggestions, refusals;
+    stericol_inspect_lines conditions; /* what is refused only as long as an option is not given */
 } stericol_inspection;
 
 void stericol_inspect_free(stericol_inspection *inspection);
@@ -161,5 +165,7 @@ void stericol_inspect_csv_heading(stericol_text *text);
 void stericol_inspect_csv(const stericol_inspection *inspection, stericol_text *text);
 /* A new object; NULL when memory is out. */
 json_t *stericol_inspect_json(const stericol_inspection *inspection);
+/* Adds a document, numbers with the fewest digits that read back the same; on failure text->failed is set. */
+void stericol_inspect_write_json(const json_t *document, stericol_text *text);
 
 #endif

@@ -2,7 +2,9 @@
 #include "commands/inspect_inside.h"
 
 #include <math.h>
+#include <stdio.h>
 #include <stdlib.h>
+#include <string.h>
 
 /*
  * Members are added with json_object_set_new(), which takes a NULL value (memory out, or a text that is not
@@ -50,6 +52,63 @@ static json_t *words(const char *text)
 static json_t *number(double value)
 {
     return isfinite(value) ? json_real(value) : json_null();
+}
+
+/* Jansson writes every number with the same count of digits: with all that any double may need. */
+static void add_shortest(stericol_text *text, const char *token, size_t length)
+{
+    enum { SURE = 15, ENOUGH = 17, ROOM = 40 };
+    char written[ROOM];
+    double value;
+
+    if (length >= ROOM || memchr(token, '.', length) == NULL) {
+        stericol_text_add_bytes(text, token, length); /* a whole number, or one with few digits */
+        return;
+    }
+    memcpy(written, token, length);
+    written[length] = '\0';
+    value = strtod(written, NULL);
+    for (int digits = SURE; digits < ENOUGH; digits++) {
+        char shorter[ROOM];
+        double again;
+
+        snprintf(shorter, sizeof shorter, "%.*g", digits, value);
+        again = strtod(shorter, NULL);
+        if (again >= value && again <= value) {
+            stericol_text_add(text, shorter);
+            /* It stays a number with a fraction, as it was. */
+            if (strpbrk(shorter, ".e") == NULL)
+                stericol_text_add(text, ".0");
+            return;
+        }
+    }
+    stericol_text_add_bytes(text, token, length);
+}
+
+void stericol_inspect_write_json(const json_t *document, stericol_text *text)
+{
+    char *written = document == NULL ? NULL : json_dumps(document, JSON_INDENT(2));
+    bool quoted = false;
+
+    text->failed = text->failed || written == NULL;
+    for (const char *c = written; c != NULL && *c != '\0';) {
+        size_t length = quoted ? 0 : strspn(c, "+-.0123456789eE");
+
+        /* Outside texts only numbers begin so; "e" alone is part of true and false. */
+        if (length > 0 && (*c == '-' || (*c >= '0' && *c <= '9'))) {
+            add_shortest(text, c, length);
+            c += length;
+            continue;
+        }
+        if (quoted && *c == '\\') {
+            stericol_text_add_bytes(text, c, 2);
+            c += 2;
+            continue;
+        }
+        quoted = *c == '"' ? !quoted : quoted;
+        stericol_text_add_bytes(text, c++, 1);
+    }
+    free(written);
 }
 
 static json_t *whole(unsigned long long value)
@@ -266,7 +325,7 @@ static json_t *level_range(const stericol_inspect_range *range)
 
     put(&made, "values", whole(range->valid));
     put(&made, "minimum", number(range->low));
-    put(&made, "mean", number(range->mean));
+    put(&made, "mean_of_cells", number(range->mean));
     put(&made, "maximum", number(range->high));
     put(&made, "below", whole(range->below));
     put(&made, "above", whole(range->above));
@@ -284,6 +343,7 @@ static json_t *level_of(const stericol_inspection *inspection, size_t k)
     put(&made, grid->vertical == STERICOL_VERTICAL_PRESSURE ? "pressure" : "depth",
         grid->own_depths ? json_null() : number(grid->level[k]));
     put(&made, "columns", whole(level->columns));
+    put(&made, "below_freezing", whole(level->frozen));
     put(&made, "share", number((double)level->columns / (double)inspection->values.cells));
     for (int q = 0; q < STERICOL_INSPECT_QUANTITIES; q++)
         put(&made, stericol_inspect_quantity_name((stericol_inspect_quantity)q),
@@ -368,6 +428,7 @@ json_t *stericol_inspect_json(const stericol_inspection *inspection)
     put(&made, "values", values_of(inspection));
     put(&made, "suspects", lines_of(&inspection->suspects, "what"));
     put(&made, "suggestions", lines_of(&inspection->suggestions, "option"));
+    put(&made, "conditions", lines_of(&inspection->conditions, "what"));
     put(&made, "refused", texts_of(&inspection->refusals));
     return finish(&made);
 }

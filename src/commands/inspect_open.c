@@ -51,6 +51,7 @@ void stericol_inspect_free(stericol_inspection *inspection)
     free_lines(&inspection->suspects);
     free_lines(&inspection->suggestions);
     free_lines(&inspection->refusals);
+    free_lines(&inspection->conditions);
     *inspection = (stericol_inspection){0};
 }
 

@@ -401,7 +401,13 @@ static void add_table_heading(const stericol_inspection *inspection, stericol_te
         if (inspection->reads[q])
             stericol_text_format(text, "  %7s %7s %7s ", "least", "mean", "most");
     stericol_text_add(text, "  below  above  zeros    ends\n");
-    stericol_text_add(text, "                [%]\n");
+    stericol_text_format(text, "%18s", "[%]");
+    for (int q = 0, before = 0; q < STERICOL_INSPECT_QUANTITIES; q++)
+        if (inspection->reads[q]) {
+            stericol_text_format(text, "%*s%17s", before, "", "of cells");
+            before = 9;
+        }
+    stericol_text_add(text, "\n");
 }
 
 static void add_columns(const stericol_inspection *inspection, stericol_text *text)
@@ -451,8 +457,9 @@ static void add_values(const stericol_inspection *inspection, stericol_text *tex
 static void add_refusals(const stericol_inspection *inspection, stericol_text *text)
 {
     if (inspection->refusals.count == 0) {
-        if (!inspection->salinity_alone)
+        if (inspection->conditions.count == 0 && !inspection->salinity_alone)
             add_heading(text, "Nothing would be refused.");
+        add_list(text, "Refused on a condition", &inspection->conditions);
         return;
     }
     add_heading(text, "Refused");

@@ -199,17 +199,66 @@ static void count_row(const double *values, const unsigned char *points, size_t 
         range->valid++;
         total += value;
         if (!(value >= range->low)) {
+            range->next_low = range->low;
             range->low = value;
             range->at_low = 0;
+        } else if (value > range->low && !(value >= range->next_low)) {
+            range->next_low = value;
         }
         if (!(value <= range->high)) {
+            range->next_high = range->high;
             range->high = value;
             range->at_high = 0;
+        } else if (value < range->high && !(value <= range->next_high)) {
+            range->next_high = value;
         }
         range->at_low += value <= range->low;
         range->at_high += value >= range->high;
     }
     stericol_exact_sum_add(sum, total);
+}
+
+/*
+ * Freezing point of sea water, degC, at practical salinity and pressure in dbar: UNESCO technical papers in
+ * marine science 44 (1983), after Millero (1978); made for salinities of 4 to 40 and up to 500 dbar.
+ */
+static double freezing_point(double salinity, double pressure)
+{
+    return -0.0575 * salinity + 1.710523e-3 * salinity * sqrt(salinity) - 2.154996e-4 * salinity * salinity -
+           7.53e-4 * pressure;
+}
+
+/* The pressure that lowers the freezing point of a level: to 1 % that of its depth in m. */
+static double pressure_of_level(const stericol_grid *grid, size_t level)
+{
+    /* Where columns have depths of their own, that below the thickest ice shelves, but at the surface. */
+    static const double deepest_ice = 2000.0; /* common practice, no source */
+
+    if (grid->own_depths)
+        return level == 0 ? 0.0 : deepest_ice;
+    return fmax(0.0, grid->level[level]);
+}
+
+/* Temperatures so far below freezing that neither the kind of temperature nor that of salinity explains it.
+ */
+static void count_frozen(const looking *look, size_t level, size_t from, size_t count)
+{
+    static const double margin = 0.5, usual_salinity = 35.0;
+    const double *temperature = look->values[STERICOL_INSPECT_TEMPERATURE];
+    const double *salinity = look->values[STERICOL_INSPECT_SALINITY];
+    stericol_inspect_level *found = &look->inspection->values.levels[level];
+    double pressure = pressure_of_level(look->grid, level);
+
+    for (size_t i = from; temperature != NULL && i < from + count; i++) {
+        bool salt = salinity != NULL && isfinite(salinity[i]);
+
+        if (!isfinite(temperature[i]) ||
+            temperature[i] >= freezing_point(salt ? salinity[i] : usual_salinity, pressure) - margin)
+            continue;
+        found->frozen++;
+        if (!(temperature[i] >= found->coldest))
+            found->coldest = temperature[i];
+    }
 }
 
 static void mark_row(const looking *look, size_t from, size_t count, unsigned char *points)
@@ -243,6 +292,7 @@ static stericol_status take_band(looking *look, size_t level0, size_t levels, si
             unsigned char *points = look->points + k * look->cells + (row0 + row) * columns;
 
             mark_row(look, from, columns, points);
+            count_frozen(look, level0 + k, from, columns);
             for (int q = 0; q < STERICOL_INSPECT_QUANTITIES; q++)
                 if (look->values[q] != NULL)
                     count_row(look->values[q] + from, points, columns,
@@ -257,12 +307,18 @@ static void add_zeros(stericol_inspect_range *range, unsigned long long zeros)
 {
     range->valid += zeros;
     if (!(range->low <= 0.0)) {
+        range->next_low = range->low;
         range->low = 0.0;
         range->at_low = 0;
+    } else if (!(range->next_low <= 0.0)) {
+        range->next_low = 0.0;
     }
     if (!(range->high >= 0.0)) {
+        range->next_high = range->high;
         range->high = 0.0;
         range->at_high = 0;
+    } else if (!(range->next_high >= 0.0)) {
+        range->next_high = 0.0;
     }
     range->at_low += range->low >= 0.0 ? zeros : 0;
     range->at_high += range->high <= 0.0 ? zeros : 0;
@@ -356,7 +412,10 @@ static stericol_inspect_level *new_levels(size_t count)
 
     for (size_t i = 0; levels != NULL && i < count; i++)
         for (int q = 0; q < STERICOL_INSPECT_QUANTITIES; q++)
-            levels[i].range[q].low = levels[i].range[q].mean = levels[i].range[q].high = NAN;
+            levels[i].range[q].low = levels[i].range[q].next_low = levels[i].range[q].mean =
+                levels[i].range[q].next_high = levels[i].range[q].high = NAN;
+    for (size_t i = 0; levels != NULL && i < count; i++)
+        levels[i].coldest = NAN;
     return levels;
 }
 

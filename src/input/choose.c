@@ -140,8 +140,8 @@ static stericol_status pick_by_itself(const stericol_input_reader *reader, steri
                                        stericol_text_string(&best.names));
         stericol_text_free(&remedy);
     } else if (!best.count && best.flat) {
-        status = stericol_input_refuse(reader, best.flat->name, "give a file with levels",
-                                       "has no vertical dimension, so it holds no columns");
+        status = stericol_input_refuse_shape(reader, best.flat->name, "give a file with levels",
+                                             "has no vertical dimension, so it holds no columns");
     }
     *found = status == STERICOL_OK ? best.first : NULL;
     *finding = best.finding;

@@ -134,6 +134,8 @@ static stericol_status absent(const stericol_input_reader *reader, const sterico
     const bool temperature = quantity == STERICOL_INPUT_TEMPERATURE;
     const char *name = temperature ? epoch->request.temperature : epoch->request.salinity;
     stericol_text list = {0};
+    if (!name && stericol_input_refuse_other(reader, quantity))
+        return STERICOL_INPUT;
     stericol_input_list_candidates(reader, quantity, &list);
     if (name)
         stericol_input_refuse(

@@ -353,9 +353,9 @@ static stericol_status positions_along(const stericol_input_reader *reader,
     }
     for (int i = 0; i < 2; i++)
         if (!found[i])
-            return stericol_input_refuse(reader, variable->name,
-                                         "give the file that holds them with --coordinates",
-                                         "no %s was found for it", names[i]);
+            return stericol_input_refuse_shape(
+                reader, variable->name, "give the file that holds them with --coordinates",
+                i == 0 ? "no latitude was found for it" : "no longitude was found for it");
     layout->latitude = found[0];
     layout->longitude = found[1];
     layout->position_file = reader->file;
@@ -450,14 +450,15 @@ static stericol_status settle_others(const stericol_input_reader *reader,
 
 static stericol_status no_levels(const stericol_input_reader *reader, const stericol_cf_variable *variable)
 {
-    stericol_text dimensions = {0};
+    stericol_text problem = {0};
+    stericol_text_add(&problem, "no vertical dimension among its dimensions (");
     for (size_t i = 0; i < variable->rank; i++)
-        stericol_text_format(&dimensions, "%s%s", i ? ", " : "",
+        stericol_text_format(&problem, "%s%s", i ? ", " : "",
                              stericol_cf_dimension_at(reader->file, variable->dimension[i])->name);
-    const stericol_status status = stericol_input_refuse(
-        reader, variable->name, "give a file with levels", "no vertical dimension among its dimensions (%s)",
-        variable->rank ? stericol_text_string(&dimensions) : "none");
-    stericol_text_free(&dimensions);
+    stericol_text_add(&problem, variable->rank ? ")" : "none)");
+    const stericol_status status = stericol_input_refuse_shape(
+        reader, variable->name, "give a file with levels", stericol_text_string(&problem));
+    stericol_text_free(&problem);
     return status;
 }
 
@@ -483,9 +484,9 @@ stericol_status stericol_input_lay_out(const stericol_input_reader *reader,
                        ? roles.coordinate[layout->axes.time]
                        : find_scalar(reader, variable, STERICOL_INPUT_TIME);
     if (roles.unstructured)
-        return stericol_input_refuse(reader, variable->name,
-                                     "put the field on a grid of rows and columns first",
-                                     "latitude and longitude run along one dimension: an unstructured grid");
+        return stericol_input_refuse_shape(
+            reader, variable->name, "put the field on a grid of rows and columns first",
+            "latitude and longitude run along one dimension: an unstructured grid");
     plane_search look = {.reader = reader, .file = reader->file, .of = variable, .roles = &roles};
     const bool lines =
         dimension_with(&roles, variable->rank, STERICOL_INPUT_LATITUDE) != STERICOL_CF_NO_AXIS &&

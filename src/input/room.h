@@ -166,6 +166,20 @@ stericol_status stericol_input_choose(const stericol_input_reader *reader, steri
 void stericol_input_list_candidates(const stericol_input_reader *reader, stericol_input_quantity quantity,
                                     stericol_text *text);
 
+/* ---- seems.c: files that are something else ---- */
+
+/*
+ * Refuses a shape that no grid has: with `problem` and `remedy` as stericol_input_refuse(), or, where the
+ * file holds floats or casts, with that.  Always STERICOL_INPUT.
+ */
+stericol_status stericol_input_refuse_shape(const stericol_input_reader *reader, const char *variable,
+                                            const char *remedy, const char *problem);
+/*
+ * For a file in which no variable is the quantity: where it seems to hold casts, a sea floor, a mask or
+ * areas and no field with levels, refuses it as that and gives true; else false, and nothing is said.
+ */
+bool stericol_input_refuse_other(const stericol_input_reader *reader, stericol_input_quantity quantity);
+
 /* ---- horizontal.c, vertical.c, areas.c: the grid ---- */
 
 stericol_status stericol_input_read_horizontal(const stericol_input_reader *reader,

@@ -129,9 +129,11 @@ static void test_dimensions(void **state)
         "theta: no vertical dimension among its dimensions (time, lat, lon); give a file with levels");
     how.order = "tzx";
     refused(&how, "theta: no latitude was found for it; give the file that holds them with --coordinates");
+}
 
-    /* An extra dimension. */
-    const char *path = made_path("ensemble.nc");
+/* A file with a dimension of three members in front; its path. */
+static const char *write_members(void)
+{
     const made_format format = {"", NC_NETCDF4, true, true, false};
     static const char *const names[4] = {"member", "depth", "lat", "lon"};
     static const size_t lengths[4] = {3, 2, 2, 2};
@@ -153,6 +155,14 @@ static void test_dimensions(void **state)
     must(nc_put_var_double(file, temperature, values));
     must(nc_put_var_double(file, salinity, values));
     must(nc_close(file));
+    return made_path("ensemble.nc");
+}
+
+static void test_members(void **state)
+{
+    (void)state;
+    const char *path = write_members();
+    try one;
     try_begin(&one, path);
     assert_open_fails(
         &one, STERICOL_INPUT,
@@ -183,7 +193,13 @@ static void test_dimensions(void **state)
         assert_assumed(&one, "temp: index 2 of 3 of its dimension member");
         try_end(&one);
     }
-    how = sea_plain("dimensions.nc");
+}
+
+static void test_select(void **state)
+{
+    (void)state;
+    try one;
+    sea how = sea_plain("dimensions.nc");
     static const char *level = "depth=2";
     try_begin(&one, sea_write(&how));
     one.request.select = &level;
@@ -242,6 +258,103 @@ static void test_grids_differ(void **state)
                      STERICOL_INPUT);
     assert_non_null(strstr(stericol_context_message(one.seen.context), "is_not_there.nc: "));
     try_end(&one);
+}
+
+/* ---- files that are something else ---- */
+
+static void refused_file(const char *path, const char *message)
+{
+    try one;
+    try_begin(&one, path);
+    assert_open_fails(&one, STERICOL_INPUT, message);
+}
+
+/*
+ * Casts as CF's discrete sampling geometries have them, with common levels, with none and under a name that
+ * says nothing, and in the float-profile format.
+ */
+static void test_casts(void **state)
+{
+    (void)state;
+    static const sea_text warm[] = {{"units", "degC"}, {"standard_name", "sea_water_temperature"}},
+                          north[] = {{"standard_name", "latitude"}, {"units", "degrees_north"}},
+                          east[] = {{"standard_name", "longitude"}, {"units", "degrees_east"}},
+                          down[] = {{"standard_name", "depth"}, {"units", "m"}, {"positive", "down"}};
+    static const struct {
+        const char *rows, *levels, *both, *depth, *depth_along, *name;
+        size_t attributes;
+        bool feature;
+    } cases[] = {{"profile", "z", "profile z", "z", "z", "temp", 2, true},
+                 {"profile", "obs", "profile obs", "how_deep", "profile obs", "temp", 2, true},
+                 {"profile", "obs", "profile obs", "how_deep", "profile obs", "hotness", 1, true},
+                 {"N_PROF", "N_LEVELS", "N_PROF N_LEVELS", "PRES", "N_PROF N_LEVELS", "TEMP", 2, false}};
+    static const double values[6] = {5, 10, 20, 6, 11, 21}, place[2] = {10, 20};
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        const made_format format = {"", NC_NETCDF4, true, true, false};
+        int file = made_create(&format, "casts.nc"), dimension;
+        must(nc_def_dim(file, cases[i].rows, 2, &dimension));
+        must(nc_def_dim(file, cases[i].levels, 3, &dimension));
+        if (cases[i].feature)
+            must(nc_put_att_text(file, NC_GLOBAL, "featureType", 7, "Profile"));
+        sea_add(file, "lat", cases[i].rows, north, 2, place);
+        sea_add(file, "lon", cases[i].rows, east, 2, place);
+        sea_add(file, cases[i].depth, cases[i].depth_along, down, 3, values);
+        sea_add(file, cases[i].name, cases[i].both, warm, cases[i].attributes, values);
+        must(nc_close(file));
+        refused_file(made_path("casts.nc"),
+                     cases[i].feature
+                         ? "holds floats or casts (featureType profile), which this version does not read; "
+                           "give gridded fields"
+                         : "holds floats or casts (dimensions N_PROF and N_LEVELS), which this version does "
+                           "not read; give gridded fields");
+    }
+}
+
+static void test_other_files(void **state)
+{
+    (void)state;
+    static const double values[4] = {1, 0, 0, 1};
+    static const struct {
+        const char *name, *message;
+        sea_text attributes[2];
+        size_t count;
+    } cases[] = {
+        {"sea_floor",
+         "sea_floor: no temperature in this file, which seems to hold the depth of the sea floor; give it "
+         "with --bathymetry, beside a file of temperature",
+         {{"standard_name", "sea_floor_depth_below_geoid"}, {"units", "m"}},
+         2},
+        {"elevation",
+         "elevation: no temperature in this file, which seems to hold the depth of the sea floor; give it "
+         "with --bathymetry, beside a file of temperature",
+         {{"units", "m"}},
+         1},
+        {"tmask",
+         "tmask: no temperature in this file, which seems to hold a mask of land and sea; give it with "
+         "--mask, beside a file of temperature",
+         {{"units", "1"}},
+         1},
+        {"basin",
+         "basin: no temperature in this file, which seems to hold a mask of regions; give it with --regions, "
+         "beside a file of temperature",
+         {{"flag_values", "0 1"}, {"flag_meanings", "none inner_bight"}},
+         2},
+        {"size",
+         "size: no temperature in this file, which seems to hold the areas of cells; give it with "
+         "--cell-area, beside a file of temperature",
+         {{"standard_name", "cell_area"}, {"units", "m2"}},
+         2},
+        {"colour",
+         "no variable was recognised as temperature; there are colour; name it with --temperature",
+         {{"units", "1"}},
+         1},
+    };
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        int file = sea_plane_file("other.nc", 2, 2);
+        sea_add(file, cases[i].name, "lat lon", cases[i].attributes, cases[i].count, values);
+        must(nc_close(file));
+        refused_file(made_path("other.nc"), cases[i].message);
+    }
 }
 
 /* ---- values that cannot be what they are called ---- */
@@ -348,6 +461,8 @@ int main(void)
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_units),      cmocka_unit_test(test_vertical),
         cmocka_unit_test(test_horizontal), cmocka_unit_test(test_dimensions),
+        cmocka_unit_test(test_members),    cmocka_unit_test(test_select),
+        cmocka_unit_test(test_casts),      cmocka_unit_test(test_other_files),
         cmocka_unit_test(test_no_times),   cmocka_unit_test(test_grids_differ),
         cmocka_unit_test(test_values),     cmocka_unit_test(test_few_bad_values),
     };
