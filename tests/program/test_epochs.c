@@ -219,7 +219,7 @@ static void test_integrals_over_a_strong_season(void **state)
 /* ---- ends of columns: a row of seas, each with its own depths ---- */
 
 enum { SEAS = 6, LEVELS = 6 };
-enum { COMPLETE, SEA_FLOOR, END_OF_DATA, UNEQUAL, GAP, NO_DATA }; /* flag_values, interface.md */
+enum { COMPLETE, SEA_FLOOR, END_OF_DATA, UNEQUAL, GAP, NO_DATA }; /* flag_values, docs/definitions.md */
 
 static const double depths[LEVELS] = {10, 100, 200, 500, 800, 1000};
 static const double columns_of_6[SEAS] = {5, 15, 25, 35, 45, 55}, rows_of_2[2] = {-5, 5};

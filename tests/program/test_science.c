@@ -3,7 +3,7 @@
  * The whole program on invented seas whose answer is simple arithmetic: uniform oceans under the linear law,
  * boxes whose area is a formula, parts that must add up.
  *
- * The linear law (design.md, definitions): v = (1/r) [1 + a (Theta - 10) - b (SA - 35)], r in kg/m3, a in
+ * The linear law (docs/definitions.md): v = (1/r) [1 + a (Theta - 10) - b (SA - 35)], r in kg/m3, a in
  * 1/K, b in kg/g.  With m = 1 + a (Theta - 10) - b (SA - 35) at the mean of both states (v is linear, so that
  * its mean is v at the mean) the fractional change of volume is [a dTheta - b dSA] / m at every depth: height
  * = that times depth.
