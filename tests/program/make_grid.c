@@ -7,9 +7,9 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { T, Z, Y, X, AXES };
+enum { T, Z, Y, X, M, AXES };
 
-static const char letters[] = "tzyx";
+static const char letters[] = "tzyxm", usual_order[] = "tzyx";
 
 /* What is being written. */
 typedef struct writing {
@@ -60,7 +60,7 @@ small_grid small_grid_plain(void)
         .rows = 4,
         .columns = 5,
         .levels = 6,
-        .order = letters,
+        .order = usual_order,
         .depth_step = 100.0,
         .time_units = "days since 2001-01-01",
         .depth_name = "depth",
@@ -85,6 +85,8 @@ static void define_axis(writing *of, int axis, const char *name, const char *sta
 
     must(nc_def_dim(of->file, name, axis == T && of->grid->unlimited ? NC_UNLIMITED : of->count[axis],
                     &of->dimension[axis]));
+    if (of->grid->bare_plane && (axis == Y || axis == X))
+        return;
     must(nc_def_var(of->file, name, NC_DOUBLE, 1, &of->dimension[axis], &variable));
     put_text(of->file, variable, "standard_name", standard_name);
     put_text(of->file, variable, "units", units);
@@ -106,18 +108,31 @@ static void define_bounds(writing *of)
     put_text(of->file, depth, "bounds", "depth_limits");
 }
 
-static void define_field(writing *of, const small_grid_field *field)
+/* The axes of a field, slowest first; their number. */
+static size_t axes_of(const writing *of, int axes[AXES])
 {
-    int dimensions[AXES], rank = 0, variable;
+    size_t rank = 0;
 
-    if (field->name == NULL)
-        return;
+    if (of->there[M])
+        axes[rank++] = M;
     for (const char *c = of->grid->order; *c != '\0'; c++) {
         const int axis = (int)(strchr(letters, *c) - letters);
 
         if (of->there[axis])
-            dimensions[rank++] = of->dimension[axis];
+            axes[rank++] = axis;
     }
+    return rank;
+}
+
+static void define_field(writing *of, const small_grid_field *field)
+{
+    int dimensions[AXES], axes[AXES], rank, variable;
+
+    if (field->name == NULL)
+        return;
+    rank = (int)axes_of(of, axes);
+    for (int d = 0; d < rank; d++)
+        dimensions[d] = of->dimension[axes[d]];
     must(nc_def_var(of->file, field->name, field->type, rank, dimensions, &variable));
     put_text(of->file, variable, "standard_name", field->standard_name);
     put_text(of->file, variable, "units", field->units);
@@ -153,8 +168,9 @@ static void make_changes(const writing *of)
 
 static double axis_value(const small_grid *grid, int axis, size_t at)
 {
-    const double *given[AXES] = {grid->time, grid->depth, grid->latitude, grid->longitude};
-    const double first[AXES] = {15.0, 5.0, -50.0, 10.0}, step[AXES] = {30.0, grid->depth_step, 2.0, 2.0};
+    const double *given[AXES] = {grid->time, grid->depth, grid->latitude, grid->longitude, NULL};
+    const double first[AXES] = {15.0, 5.0, -50.0, 10.0, 0.0},
+                 step[AXES] = {30.0, grid->depth_step, 2.0, 2.0, 0.0};
 
     return given[axis] != NULL ? given[axis][at] : first[axis] + step[axis] * (double)at;
 }
@@ -163,7 +179,7 @@ static void write_axis(const writing *of, int axis, const char *name)
 {
     int variable;
 
-    if (!of->there[axis])
+    if (!of->there[axis] || (of->grid->bare_plane && (axis == Y || axis == X)))
         return;
     must(nc_inq_varid(of->file, name, &variable));
     for (size_t at = 0; at < of->count[axis]; at++) {
@@ -203,18 +219,13 @@ static double stored(const small_grid_field *field, double value)
 
 static void write_field(const writing *of, const small_grid_field *field)
 {
-    size_t at[AXES] = {0}, length[AXES], stride[AXES], points = 1, rank = 0;
+    size_t at[AXES] = {0}, length[AXES], stride[AXES], points = 1, rank;
     int axes[AXES], variable;
     double *values;
 
     if (field->name == NULL)
         return;
-    for (const char *c = of->grid->order; *c != '\0'; c++) {
-        const int axis = (int)(strchr(letters, *c) - letters);
-
-        if (of->there[axis])
-            axes[rank++] = axis;
-    }
+    rank = axes_of(of, axes);
     for (size_t d = rank; d-- > 0;) {
         length[d] = of->count[axes[d]];
         stride[axes[d]] = points;
@@ -227,7 +238,10 @@ static void write_field(const writing *of, const small_grid_field *field)
     for (size_t p = 0; p < points; p++) {
         for (int axis = 0; axis < AXES; axis++)
             at[axis] = of->there[axis] ? p / stride[axis] % of->count[axis] : 0;
-        values[p] = stored(field, field->value(of->grid, at[T], at[Z], at[Y], at[X]));
+        values[p] = field->value(of->grid, at[T], at[Z], at[Y], at[X]);
+        if (of->there[M] && field == &of->grid->temperature)
+            values[p] += 0.7 * (double)at[M];
+        values[p] = stored(field, values[p]);
     }
     must(nc_inq_varid(of->file, field->name, &variable));
     if (field->type != NC_CHAR) { /* characters hold no numbers */
@@ -241,8 +255,8 @@ static void write_field(const writing *of, const small_grid_field *field)
 void small_grid_write(const small_grid *grid, const char *folder, const char *name)
 {
     writing of = {.grid = grid,
-                  .there = {grid->has_time || grid->times > 0, true, true, true},
-                  .count = {grid->times, grid->levels, grid->rows, grid->columns}};
+                  .there = {grid->has_time || grid->times > 0, true, true, true, grid->members > 0},
+                  .count = {grid->times, grid->levels, grid->rows, grid->columns, grid->members}};
     char path[4096];
 
     assert_true((size_t)snprintf(path, sizeof path, "%s/%s", folder, name) < sizeof path);
@@ -252,6 +266,8 @@ void small_grid_write(const small_grid *grid, const char *folder, const char *na
     define_axis(&of, Z, grid->depth_name, "depth", "m");
     define_axis(&of, Y, "latitude", "latitude", "degrees_north");
     define_axis(&of, X, "longitude", "longitude", "degrees_east");
+    if (of.there[M])
+        must(nc_def_dim(of.file, "member", grid->members, &of.dimension[M]));
     define_bounds(&of);
     define_field(&of, &grid->temperature);
     define_field(&of, &grid->salinity);
@@ -264,5 +280,46 @@ void small_grid_write(const small_grid *grid, const char *folder, const char *na
     write_bounds(&of);
     write_field(&of, &grid->temperature);
     write_field(&of, &grid->salinity);
+    must(nc_close(of.file));
+}
+
+void small_grid_write_plane(const small_grid *grid, const small_grid_plane *plane, const char *folder,
+                            const char *name)
+{
+    writing of = {.grid = grid, .there = {false, plane->levels, true, true, false}};
+    char path[4096];
+    int variable;
+
+    memcpy(of.count, (const size_t[]){0, grid->levels, grid->rows, grid->columns, 0}, sizeof of.count);
+    assert_true((size_t)snprintf(path, sizeof path, "%s/%s", folder, name) < sizeof path);
+    must(nc_create(path, NC_CLOBBER, &of.file));
+    if (plane->levels)
+        define_axis(&of, Z, grid->depth_name, "depth", "m");
+    define_axis(&of, Y, "latitude", "latitude", "degrees_north");
+    define_axis(&of, X, "longitude", "longitude", "degrees_east");
+    must(nc_def_var(of.file, plane->name, plane->type, plane->levels ? 3 : 2,
+                    of.dimension + (plane->levels ? Z : Y), &variable));
+    for (size_t i = 0; plane->attributes[i] != NULL; i += 2)
+        put_text(of.file, variable, plane->attributes[i], plane->attributes[i + 1]);
+    if (plane->flags > 0) {
+        const signed char flags[] = {1, 2, 3, 4};
+
+        assert_true(plane->flags <= sizeof flags);
+        must(nc_put_att_schar(of.file, variable, "flag_values", NC_BYTE, plane->flags, flags));
+    }
+    must(nc_enddef(of.file));
+    write_axis(&of, Z, grid->depth_name);
+    write_axis(&of, Y, "latitude");
+    write_axis(&of, X, "longitude");
+    for (size_t k = 0; k < (plane->levels ? grid->levels : 1); k++)
+        for (size_t j = 0; j < grid->rows; j++)
+            for (size_t i = 0; i < grid->columns; i++) {
+                const size_t at[] = {k, j, i};
+                double value = plane->plain + plane->slope * (double)(j + i);
+
+                value = plane->most > 0.0 ? fmin(value, plane->most) : value;
+
+                must(nc_put_var1_double(of.file, variable, at + !plane->levels, &value));
+            }
     must(nc_close(of.file));
 }

@@ -48,8 +48,10 @@ struct small_grid {
     const double *latitude, *longitude, *depth, *time;
     double depth_step;
     const char *time_units, *depth_name;
-    bool depth_bounds;      /* cells that meet half way between the levels */
-    int deflate;            /* NetCDF-4: 0 contiguous, else the level */
+    bool bare_plane;   /* no coordinate variables for rows and columns */
+    size_t members;    /* a first dimension "member" of the fields, each 0.7 warmer than the last; 0: none */
+    bool depth_bounds; /* cells that meet half way between the levels */
+    int deflate;       /* NetCDF-4: 0 contiguous, else the level */
     double warmer, saltier; /* added by the usual values to all that they give */
     small_grid_field temperature, salinity;
     small_grid_change changes[SMALL_GRID_CHANGES];
@@ -60,6 +62,22 @@ small_grid small_grid_plain(void);
 /* The usual values: 12 degC and 34.5 at the top, colder and saltier with depth, a little of everything along
    the rows, columns and times. */
 small_grid_value small_grid_temperature, small_grid_salinity, small_grid_missing, small_grid_nothing;
+
+/*
+ * A file with one variable on the same rows and columns (and levels, where `levels`), of the value
+ * plain + slope * (row + column); attributes: names and texts in turn, ended by NULL.
+ */
+typedef struct small_grid_plane {
+    const char *name;
+    bool levels;
+    nc_type type;
+    double plain, slope;
+    const char *attributes[9];
+    size_t flags; /* flag_values 1..flags */
+    double most;  /* of the values; 0: no limit */
+} small_grid_plane;
+void small_grid_write_plane(const small_grid *grid, const small_grid_plane *plane, const char *folder,
+                            const char *name);
 
 /* Writes the file; fails the test where NetCDF-C does not take it. */
 void small_grid_write(const small_grid *grid, const char *folder, const char *name);
