@@ -57,6 +57,8 @@ static void find_ending(const stericol_sweep *sweep, size_t column, ending *end)
             end->sum[k][s] = stericol_sum_plane(sweep, k, s)[column];
 }
 
+static const double float_rounding = 1e-6;
+
 static stericol_layer_state layer_state_of(const stericol_sweep *sweep, const ending *end,
                                            const stericol_layer_range *layer)
 {
@@ -70,7 +72,8 @@ static stericol_layer_state layer_state_of(const stericol_sweep *sweep, const en
     if (end->top > upper || !(end->reached > upper))
         return STERICOL_LAYER_INCOMPLETE;
     /* An open layer is complete wherever the data end; the flag says where that is. */
-    if (end->reached >= lower || end->at_floor || !isfinite(lower))
+    /* A limit stored as float may fall short of the metre that is meant. */
+    if (end->reached >= lower - float_rounding * lower || end->at_floor || !isfinite(lower))
         return STERICOL_LAYER_COMPLETE;
     return STERICOL_LAYER_INCOMPLETE;
 }

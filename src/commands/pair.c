@@ -298,6 +298,9 @@ static void count_flags(const stericol_pair_work *work, const stericol_pair_tile
             outcome->flags[flags[i]]++;
         if (isfinite(total[i]) && area[i] > 0.0)
             outcome->used++;
+        for (size_t k = 0; k < work->pair->column.layer_count && area[i] > 0.0; k++)
+            if (stericol_sweep_layer_state(tile->sweep, k)[i] == STERICOL_LAYER_COMPLETE)
+                outcome->layer_columns++;
     }
     if (isfinite(deepest))
         outcome->deepest = fmax(outcome->deepest, deepest);
@@ -341,7 +344,7 @@ static void reset(stericol_pair_work *work, stericol_pair_outcome *outcome)
         work->counters[i].outside_equation = work->counters[i].rejected = 0;
     }
     memset(outcome->flags, 0, sizeof outcome->flags);
-    outcome->used = 0;
+    outcome->used = outcome->layer_columns = 0;
     outcome->deepest = 0.0;
     outcome->readings++;
 }
@@ -382,6 +385,30 @@ static bool judge_zeros(stericol_pair_work *work, stericol_pair_outcome *outcome
         }
     }
     return wrong;
+}
+
+/*
+ * Without a salinity beside it T = 0 alone cannot tell land from water at 0 degC; but a tenth of a level at
+ * exactly that is land, and would count as water without change.
+ */
+static stericol_status refuse_lone_zeros(stericol_pair_work *work)
+{
+    double cells = (double)work->grid->rows * (double)work->grid->columns;
+
+    for (size_t e = 0; e < work->epoch_count; e++) {
+        stericol_epoch_variable variable = stericol_epoch_temperature(work->pair->epochs[e].epoch);
+
+        if (work->pair->epochs[e].salinity_source == STERICOL_SALINITY_FROM_FILE || work->grid->dry != NULL)
+            continue;
+        for (size_t k = 0; k < work->level_count; k++)
+            if ((double)work->tally[e][k].zeros >= 0.1 * cells)
+                return stericol_fail(
+                    work->context, STERICOL_INPUT, variable.file, variable.name,
+                    "give the land with --mask, or write it as missing values",
+                    "is exactly 0 in %llu of %.0f cells at level %zu: land written as zeros, it seems",
+                    work->tally[e][k].zeros, cells, k + 1);
+    }
+    return STERICOL_OK;
 }
 
 static stericol_status gather(stericol_pair_work *work, stericol_pair_outcome *outcome)
@@ -492,13 +519,15 @@ stericol_status stericol_pair_run(stericol_context *context, stericol_executor *
         status = stericol_pair_slab_new(&work, &slabs[i]);
     if (status == STERICOL_OK)
         status = run_grid(&work, slabs, outcome);
+    if (status == STERICOL_OK)
+        status = refuse_lone_zeros(&work);
     if (status == STERICOL_OK && judge_zeros(&work, outcome)) {
         status = run_grid(&work, slabs, outcome);
         judge_zeros(&work, outcome);
     }
     if (status == STERICOL_OK)
         status = gather(&work, outcome);
-    if (status == STERICOL_OK && outcome->used == 0)
+    if (status == STERICOL_OK && outcome->layer_columns == 0)
         status = refuse_nothing(&work);
     for (size_t i = 0; i < 2; i++)
         stericol_pair_slab_free(&slabs[i]);

@@ -88,7 +88,8 @@ typedef struct stericol_pair_outcome {
     double *region_area;                 /* [regions] m2 */
     stericol_pair_sums *sums;            /* [regions][layers + 1] */
     size_t flags[STERICOL_COLUMN_FLAGS]; /* columns of each flag */
-    size_t used;                         /* columns in the whole-column sums */
+    size_t used;                         /* columns with a result over all layers */
+    size_t layer_columns;                /* complete layers, counted over all columns */
     double deepest;                      /* m */
     size_t readings;         /* times every value was read: 1, or 2 when zeros had to be looked at again */
     size_t land_zero_levels; /* levels on which land was written as zeros */

@@ -205,7 +205,8 @@ static stericol_status average_epoch(integral_work *work, size_t room)
     const stericol_pair_epoch *source = &slab->work->pair->epochs[read_epoch(work)];
     size_t members = stericol_epoch_member_count(source->epoch);
     bool reads_salinity = source->salinity_source == STERICOL_SALINITY_FROM_FILE;
-    double least = slab->work->pair->least_times * (double)members;
+    /* As in the average of states: half of an even number of members is enough whatever the rounding. */
+    double least = slab->work->pair->least_times * (double)members - 1e-9;
 
     for (size_t p = 0; p < PARTS; p++)
         memset(work->whole[work->epoch][p], 0, room * sizeof(double));
@@ -249,8 +250,9 @@ static void give_means(integral_work *work, size_t room)
         slab->averaged[3][i] = mean[1][HALOSTERIC] - mean[0][HALOSTERIC];
         /* A point that has a mean state has a mean integral, but for values that only conversion makes
          * unusable. */
-        if (isnan(slab->averaged[2][i]) || isnan(slab->averaged[3][i]))
-            slab->temperature[0][i] = slab->temperature[1][i] = NAN;
+        for (size_t e = 0; e < 2; e++)
+            if (isnan(mean[e][VOLUME]) && isfinite(slab->temperature[e][i]))
+                slab->temperature[e][i] = NAN;
     }
 }
 

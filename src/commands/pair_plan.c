@@ -32,7 +32,7 @@ static double plan_bytes(const stericol_pair_work *work, size_t rows, size_t lev
     if (work->grid->own_depths)
         point += 2.0 * 3.0 * sizeof(double);
     if (pair->average_integrals)
-        point += 22.0 * sizeof(double); /* the arrays of pair_integral.c and what it fills */
+        point += 26.0 * sizeof(double); /* the arrays of pair_integral.c and what it fills */
     bytes = point * (double)count * (double)levels;
     bytes += (double)stericol_sweep_bytes(&pair->column, count, row_length, pair->sea_floor != NULL);
     bytes += (double)count; /* wet */

@@ -304,6 +304,18 @@ typedef struct conversion {
     size_t level, worker;
 } conversion;
 
+/* Any temperature on the first level is water, but for land written as zeros. */
+static void mark_wet(const stericol_pair_work *work, size_t epoch, size_t count, const double *salinity,
+                     const double *temperature, unsigned char *wet)
+{
+    bool zeros = work->pair->epochs[epoch].salinity_source == STERICOL_SALINITY_FROM_FILE &&
+                 work->zero_is_land[epoch][0];
+
+    for (size_t i = 0; i < count; i++)
+        if (isfinite(temperature[i]) && !(zeros && fabs(temperature[i]) + fabs(salinity[i]) <= 0.0))
+            wet[i] = 1;
+}
+
 static void convert_piece_of_slab(void *argument, const stericol_pair_piece *piece, size_t index)
 {
     conversion *task = argument;
@@ -313,9 +325,8 @@ static void convert_piece_of_slab(void *argument, const stericol_pair_piece *pie
 
     if (piece->level == 0)
         for (size_t e = 0; e < work->epoch_count; e++)
-            for (size_t i = 0; i < piece->count; i++)
-                if (isfinite(slab->temperature[e][at + i]))
-                    task->tile->wet[index + i] = 1;
+            mark_wet(work, e, piece->count, slab->salinity[e] + at, slab->temperature[e] + at,
+                     task->tile->wet + index);
     for (size_t e = 0; e < work->epoch_count; e++)
         stericol_pair_convert_piece(work, e, piece, slab->salinity[e] + at, slab->temperature[e] + at);
     if (work->pair->kind == STERICOL_PAIR_SCENARIO)

@@ -21,6 +21,20 @@ static const stericol_column_quantity summed[] = {STERICOL_COLUMN_TOTAL, STERICO
                                                   STERICOL_COLUMN_HALOSTERIC, STERICOL_COLUMN_HEAT,
                                                   STERICOL_COLUMN_HEAT_MAGNITUDE};
 
+/*
+ * Whether a column counts for a layer, or for all of them together: complete, or wholly below the sea floor,
+ * where its part is zero.  So the divisor does not depend on which other layers are asked for.
+ */
+static bool counts(const stericol_sweep *sweep, size_t layer, size_t layers, size_t column)
+{
+    size_t first = layer == layers ? 0 : layer, last = layer == layers ? layers - 1 : layer;
+
+    for (size_t k = first; k <= last; k++)
+        if (stericol_sweep_layer_state(sweep, k)[column] == STERICOL_LAYER_INCOMPLETE)
+            return false;
+    return true;
+}
+
 /* What one row adds to one layer's sums (layer == layers: the whole column). */
 static void sum_layer_row(const sum_work *sum, stericol_region_totals *totals, size_t region, size_t layer,
                           size_t tile_row, const double *weight, double *value)
@@ -28,21 +42,15 @@ static void sum_layer_row(const sum_work *sum, stericol_region_totals *totals, s
     const stericol_pair_work *work = sum->work;
     size_t layers = work->pair->column.layer_count, columns = work->grid->columns, at = tile_row * columns;
     size_t first = layer * STERICOL_PAIR_SUMS, which = layer == layers ? STERICOL_WHOLE_COLUMN : layer;
-    const unsigned char *states =
-        layer == layers ? NULL : stericol_sweep_layer_state(sum->tile->sweep, layer) + at;
     const signed char *flags = stericol_sweep_flags(sum->tile->sweep) + at;
-    const double *total = stericol_sweep_result(sum->tile->sweep, STERICOL_COLUMN_TOTAL, which) + at;
 
     for (size_t q = 0; q < sizeof summed / sizeof summed[0]; q++) {
         const double *result = stericol_sweep_result(sum->tile->sweep, summed[q], which) + at;
 
         stericol_region_totals_add_row(totals, region, first + q, columns, weight, result);
     }
-    for (size_t i = 0; i < columns; i++) {
-        bool below = states != NULL && states[i] == STERICOL_LAYER_BELOW_SEA_FLOOR;
-
-        value[i] = isfinite(total[i]) || below ? 1.0 : (double)NAN;
-    }
+    for (size_t i = 0; i < columns; i++)
+        value[i] = counts(sum->tile->sweep, layer, layers, at + i) ? 1.0 : (double)NAN;
     stericol_region_totals_add_row(totals, region, first + STERICOL_PAIR_SUM_AREA, columns, weight, value);
     for (size_t i = 0; i < columns; i++)
         if (weight[i] > 0.0 && isnan(value[i]) && flags[i] != STERICOL_COLUMN_NO_DATA)

@@ -105,8 +105,9 @@ static stericol_status choose_regions(stericol_session *session, const stericol_
 static stericol_status check_regions(stericol_session *session, const stericol_publication *publication)
 {
     for (size_t r = 0; r < publication->region_count; r++)
-        if (sums_of(&publication->outcome, publication->chosen[r], STERICOL_WHOLE_COLUMN)->covered_area > 0.0)
-            return STERICOL_OK;
+        for (size_t layer = 0; layer < publication->outcome.layers; layer++)
+            if (sums_of(&publication->outcome, publication->chosen[r], layer)->covered_area > 0.0)
+                return STERICOL_OK;
     return stericol_fail(session->context, STERICOL_NOTHING, NULL, NULL,
                          "give regions that hold data; inspect shows where the grid lies",
                          "no region holds a column that could be used");
@@ -146,18 +147,42 @@ static stericol_status write_areas(stericol_session *session, const stericol_set
     return stericol_result_cell_area(session->context, result, 0, setup->cells.cells.rows, setup->cell_area);
 }
 
+/* Whether a path of an option, as given, is that file; a list stands behind an @. */
+static bool is_same(const char *given, const char *output)
+{
+    return stericol_cf_same_file(given, output) ||
+           (given[0] == '@' && stericol_cf_same_file(given + 1, output));
+}
+
 /* An output that is one of the inputs would be replaced by what was made from it. */
 static stericol_status check_output(stericol_session *session, const stericol_setup *setup,
                                     const char *output)
 {
     const stericol_epoch *epochs[] = {setup->epochs[0], setup->epochs[1], setup->background, setup->anomaly};
+    const stericol_command *command = stericol_settings_command(session->settings);
+    const char *same = NULL;
 
     for (size_t e = 0; e < sizeof epochs / sizeof epochs[0]; e++)
         for (size_t i = 0; epochs[e] != NULL && i < stericol_epoch_file_count(epochs[e]); i++)
             if (stericol_cf_same_file(output, stericol_epoch_file(epochs[e], i, NULL)))
-                return stericol_fail(session->context, STERICOL_USAGE, output, "--output",
-                                     "give another name", "is one of the inputs");
-    return STERICOL_OK;
+                same = "the data";
+    for (size_t o = 0; o < command->option_count; o++) {
+        const stericol_option *option = command->options[o];
+        size_t count;
+        const char *const *paths;
+
+        if ((option->kind != STERICOL_OPTION_PATH && option->kind != STERICOL_OPTION_PATHS) ||
+            strcmp(option->name, "output") == 0)
+            continue;
+        paths = stericol_settings_list(session->settings, option->name, &count);
+        for (size_t i = 0; i < count; i++)
+            if (is_same(paths[i], output))
+                same = option->name;
+    }
+    if (same == NULL)
+        return STERICOL_OK;
+    return stericol_fail(session->context, STERICOL_USAGE, output, "--output", "give another name",
+                         "is a file that the run uses already (%s)", same);
 }
 
 static void describe_layout(stericol_session *session, const stericol_setup *setup, const char *title,

@@ -100,6 +100,37 @@ static void tell_plan(stericol_session *session, const stericol_pair_plan *plan)
             plan->inflations);
 }
 
+/* "0..700", "2000..bottom" */
+enum { LAYER_ROOM = 64 };
+
+static void name_layer(const stericol_layer *layer, char name[LAYER_ROOM])
+{
+    if (isfinite(layer->lower))
+        snprintf(name, LAYER_ROOM, "%.10g..%.10g", layer->upper, layer->lower);
+    else
+        snprintf(name, LAYER_ROOM, "%.10g..bottom", layer->upper);
+}
+
+/* A layer that no column fills: the others stand, and its row is blank. */
+static void tell_empty_layers(stericol_session *session, const stericol_publication *publication)
+{
+    size_t layers = publication->outcome.layers;
+
+    for (size_t layer = 0; layer < layers; layer++) {
+        bool filled = false;
+        char name[LAYER_ROOM];
+
+        for (size_t r = 0; r < publication->region_count && !filled; r++)
+            filled =
+                publication->outcome.sums[publication->chosen[r] * (layers + 1) + layer].covered_area > 0.0;
+        name_layer(&publication->setup->layers[layer], name);
+        if (!filled)
+            stericol_session_warn(
+                session, "the layer %s is complete in no column of any region: nothing is given for it",
+                name);
+    }
+}
+
 void stericol_publish_warnings(stericol_session *session, const stericol_publication *publication)
 {
     const stericol_pair_outcome *outcome = &publication->outcome;
@@ -122,6 +153,7 @@ void stericol_publish_warnings(stericol_session *session, const stericol_publica
                                   "leaves nothing to integrate",
                                   publication->region_names[r], sums[layers].incomplete);
     }
+    tell_empty_layers(session, publication);
     if (differ)
         stericol_session_warn(
             session,
@@ -158,17 +190,6 @@ static void add_inputs(stericol_text *text, const char *role, const stericol_epo
 
         add_line(text, role, path, &identity);
     }
-}
-
-/* The depth table of a scenario, which is no NetCDF file. */
-static void add_profile(stericol_text *text, const char *path)
-{
-    struct stat found;
-
-    if (path != NULL && stat(path, &found) == 0)
-        add_line(
-            text, "profile", path,
-            &(stericol_cf_identity){.bytes = (unsigned long long)found.st_size, .changed = found.st_mtime});
 }
 
 /* A file that is not NetCDF: it has no id. */
@@ -394,8 +415,6 @@ stericol_status stericol_publish_provenance(stericol_session *session, stericol_
     if (!scenario)
         describe_months(&attributes[MONTHS_LATER].text, setup->epochs[1]);
     stericol_text_add(&attributes[INSTRUCTIONS].text, stericol_instruction_set());
-    if (scenario)
-        add_profile(&attributes[INPUTS].text, stericol_settings_text(session->settings, "profile"));
     status = add_other_inputs(session, &attributes[INPUTS].text);
     if (status == STERICOL_OK)
         status = put_constants(session, publication);
@@ -408,17 +427,6 @@ stericol_status stericol_publish_provenance(stericol_session *session, stericol_
 }
 
 /* ---- the table ---- */
-
-/* "0..700", "2000..bottom" */
-enum { LAYER_ROOM = 64 };
-
-static void name_layer(const stericol_layer *layer, char name[LAYER_ROOM])
-{
-    if (isfinite(layer->lower))
-        snprintf(name, LAYER_ROOM, "%.10g..%.10g", layer->upper, layer->lower);
-    else
-        snprintf(name, LAYER_ROOM, "%.10g..bottom", layer->upper);
-}
 
 static void fill_row(const stericol_publication *publication, size_t region, size_t layer,
                      stericol_table_row *row)

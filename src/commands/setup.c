@@ -225,6 +225,9 @@ static stericol_status check_distinct(stericol_session *session, const stericol_
 
         if (strcmp(a->temperature_file, b->temperature_file) != 0 || strcmp(a->text, b->text) != 0)
             return STERICOL_OK;
+        if (a->salinity_file != NULL && b->salinity_file != NULL &&
+            strcmp(a->salinity_file, b->salinity_file) != 0)
+            return STERICOL_OK;
     }
     return stericol_fail(
         session->context, STERICOL_USAGE, NULL, NULL,

@@ -243,7 +243,7 @@ enum { LINE_ROOM = 4096 };
 
 run_result inspect_run(const char *arguments)
 {
-    char line[LINE_ROOM];
+    char line[LINE_ROOM + sizeof "inspect "];
 
     snprintf(line, sizeof line, "inspect %s", arguments);
     return run_line(line, NULL);
