@@ -24,8 +24,10 @@ static double target_of(const stericol_sweep *sweep, size_t column)
     const double floor = stericol_floor_of(sweep, column);
     const double reached = stericol_metres(sweep, end, row);
     double target = end;
-    /* As at the surface: all the way or not at all, so that no water is made up above a floor far below. */
-    if (isfinite(floor) && (phase & STERICOL_PHASE_GAP) == 0 &&
+    /* As at the surface: all the way or not at all, so that no water is made up above a floor far below; and
+       not at all where the end is known not to be the floor. */
+    const bool open = (phase & STERICOL_PHASE_ENDS_ABOVE_FLOOR) != 0;
+    if (isfinite(floor) && !open &&
         stericol_metres(sweep, floor, row) - reached <= sweep->options.bottom_reach)
         target = floor > end ? floor : end;
     for (size_t k = 0; sweep->options.cast && k < sweep->cuts.layer_count; k++) {
@@ -33,7 +35,7 @@ static double target_of(const stericol_sweep *sweep, size_t column)
         const double metres = sweep->cuts.limit[limit];
         if (metres > reached && isfinite(metres) && stericol_close_for_cast(metres, reached)) {
             const double coordinate = stericol_limit_of(sweep, limit, row);
-            const double cut = coordinate < floor ? coordinate : floor;
+            const double cut = coordinate < floor ? coordinate : open ? end : floor;
             target = cut > target ? cut : target;
         }
     }

@@ -33,10 +33,9 @@ static bool is_at_floor(const stericol_sweep *sweep, const ending *end)
     if ((end->phase & STERICOL_PHASE_FLOOR) != 0)
         return true;
     if (isfinite(end->floor))
-        return sweep->options.cast &&
+        return sweep->options.cast && (end->phase & STERICOL_PHASE_ENDS_ABOVE_FLOOR) == 0 &&
                stericol_close_for_cast(stericol_metres(sweep, end->floor, end->row), end->reached_metres);
-    const unsigned against = STERICOL_PHASE_GAP | STERICOL_PHASE_REJECTED | STERICOL_PHASE_AXIS_END |
-                             STERICOL_PHASE_EARLIER_DEEPER | STERICOL_PHASE_LATER_DEEPER;
+    const unsigned against = STERICOL_PHASE_ENDS_ABOVE_FLOOR | STERICOL_PHASE_AXIS_END;
     return !sweep->options.cast && (end->phase & against) == 0;
 }
 

@@ -35,7 +35,11 @@ enum {
     STERICOL_PHASE_AXIS_END = 32, /* the last sample is the axis' last level */
     STERICOL_PHASE_EARLIER_DEEPER = 64,
     STERICOL_PHASE_LATER_DEEPER = 128,
-    STERICOL_PHASE_AVERAGED = 256 /* integrands were given, not evaluated */
+    STERICOL_PHASE_AVERAGED = 256, /* integrands were given, not evaluated */
+    /* Any of these: the common water goes on, or may go on, below the end, so that the end is no sea floor.
+     */
+    STERICOL_PHASE_ENDS_ABOVE_FLOOR = STERICOL_PHASE_GAP | STERICOL_PHASE_REJECTED |
+                                      STERICOL_PHASE_EARLIER_DEEPER | STERICOL_PHASE_LATER_DEEPER
 };
 
 /* How a column stands before a level; the phase in short. */

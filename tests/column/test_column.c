@@ -503,6 +503,58 @@ static void bathymetry_cuts_and_carries(void **state)
     free_field(&f);
 }
 
+/* Water that one epoch alone has, or that was rejected, is below the end: no floor within reach is met there.
+ */
+static void unequal_ends_are_not_carried_to_the_floor(void **state)
+{
+    (void)state;
+    const double position[] = {0, 50, 100, 150, 200, 640}, warming[] = {1, 1, 1, 1, 1, 1};
+    for (int cast = 0; cast < 2; cast++) {
+        for (int which = 0; which < 2; which++) {
+            /* The floor 490 m below the end, and so near that a cast would count as complete. */
+            const double floors[] = {640.0, 165.0};
+            for (size_t i = 0; i < 2; i++) {
+                stericol_column_options options = plain_options(STERICOL_VERTICAL_LINEAR);
+                field f = one_column(6, position, warming);
+                options.cast = cast == 1;
+                options.bottom_reach = 500.0;
+                f.floor = new_values(1);
+                f.floor[0] = floors[i];
+                f.temperature[which][4] = f.temperature[which][5] = MISSING;
+                outcome o = run(&options, &f);
+                assert_int_equal(o.flag, STERICOL_COLUMN_UNEQUAL);
+                assert_same_number(o.depth, 150.0);
+                assert_close(o.total, a * 150.0, rounding);
+                f.temperature[which][4] = REJECTED;
+                o = run(&options, &f);
+                assert_int_equal(o.flag, STERICOL_COLUMN_OUTSIDE_RANGE);
+                assert_same_number(o.depth, 150.0);
+                /* Both epochs end alike: carried, as ever. */
+                for (size_t k = 4; k < 6; k++)
+                    f.temperature[0][k] = f.temperature[1][k] = MISSING;
+                o = run(&options, &f);
+                assert_int_equal(o.flag, STERICOL_COLUMN_SEA_FLOOR);
+                assert_same_number(o.depth, floors[i]);
+                free_field(&f);
+            }
+        }
+    }
+    /* The limit of a layer below a floor that is near does not draw a cast down to the floor either. */
+    const stericol_layer layer = {0, 168};
+    stericol_column_options options = plain_options(STERICOL_VERTICAL_LINEAR);
+    field f = one_column(6, position, warming);
+    options.cast = true;
+    options.layers = &layer;
+    options.layer_count = 1;
+    f.floor = new_values(1);
+    f.floor[0] = 165.0;
+    f.temperature[0][4] = f.temperature[0][5] = MISSING;
+    const outcome o = run(&options, &f);
+    assert_int_equal(o.flag, STERICOL_COLUMN_UNEQUAL);
+    assert_int_equal(o.state[0], STERICOL_LAYER_INCOMPLETE);
+    free_field(&f);
+}
+
 static void casts_are_completed_when_close(void **state)
 {
     (void)state;
@@ -780,6 +832,7 @@ int main(void)
         cmocka_unit_test(carried_water_feels_its_new_pressure),
         cmocka_unit_test(gaps_are_bridged_within_reach),
         cmocka_unit_test(bathymetry_cuts_and_carries),
+        cmocka_unit_test(unequal_ends_are_not_carried_to_the_floor),
         cmocka_unit_test(casts_are_completed_when_close),
         cmocka_unit_test(pressure_and_depth_agree),
         cmocka_unit_test(pressure_sums_are_plain_arithmetic),
