@@ -51,7 +51,7 @@ static void set_cache(stericol_cf_field *field, size_t bytes)
     *set = bytes + 1;
     /* A prime number of slots (HDF5 reference manual, H5Pset_cache): ten a chunk up to a thousand chunks. */
     (void)nc_set_var_chunk_cache(field->variable->group_handle, field->variable->handle, bytes,
-                                 bytes == 0 ? 521 : 10007, 1.0F);
+                                 bytes == 0 ? 521 : 10007, STERICOL_CF_PREEMPTION);
 }
 
 /* Extent in the file of the chunks that from..to touches; *whole is cleared when a chunk is touched in part.

@@ -11,6 +11,13 @@
 #include <stdint.h>
 #include <sys/types.h>
 
+/*
+ * How much chunks that were read or written in whole are given up before others (H5Pset_cache, rdcc_w0).
+ * With 1 the library looks at no others: chunks that a read touched in part are then never given up, and the
+ * cache grows past its limit with every time of a series.  0.75 is the library's own default.
+ */
+#define STERICOL_CF_PREEMPTION 0.75F
+
 /* ---- location.c: what a path leads to, before any library touches it ---- */
 
 typedef enum stericol_cf_storage {

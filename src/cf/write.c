@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "cf/write.h"
+#include "cf/room.h"
 
 #include "base/checked.h"
 #include "base/text.h"
@@ -287,7 +288,8 @@ static int compress(int file, written_variable *variable, size_t size)
     if (code == NC_NOERR)
         code = nc_def_var_deflate(file, variable->handle, 1, 1, DEFLATE_LEVEL);
     if (code == NC_NOERR)
-        code = nc_set_var_chunk_cache(file, variable->handle, open * chunk_bytes, CACHE_SLOTS, 1.0F);
+        code = nc_set_var_chunk_cache(file, variable->handle, open * chunk_bytes, CACHE_SLOTS,
+                                      STERICOL_CF_PREEMPTION);
     return code;
 }
 

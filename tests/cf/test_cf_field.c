@@ -8,6 +8,9 @@
 
 #include "cf/field.h"
 
+#ifdef __GLIBC__
+#include <malloc.h>
+#endif
 #include <math.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -285,9 +288,8 @@ static void contiguous_files_tell_their_stride(void **state)
         int order[3];
         size_t levels, rows;
     } cases[] = {
-        {{LEVEL, ROW, COLUMN}, 1, 1},         {{ROW, COLUMN, LEVEL}, LEVELS, 1},
-        {{COLUMN, ROW, LEVEL}, LEVELS, 1}, {{LEVEL, COLUMN, ROW}, 1, 1},
-        {{ROW, LEVEL, COLUMN}, LEVELS, 1},    {{COLUMN, LEVEL, ROW}, LEVELS, 1},
+        {{LEVEL, ROW, COLUMN}, 1, 1}, {{ROW, COLUMN, LEVEL}, LEVELS, 1}, {{COLUMN, ROW, LEVEL}, LEVELS, 1},
+        {{LEVEL, COLUMN, ROW}, 1, 1}, {{ROW, LEVEL, COLUMN}, LEVELS, 1}, {{COLUMN, LEVEL, ROW}, LEVELS, 1},
     };
     const stericol_cf_conversion same = {1.0, 0.0, (double)-INFINITY, (double)INFINITY};
     size_t n, levels, rows;
@@ -498,6 +500,91 @@ static void large_slabs_are_read_in_pieces(void **state)
     free(values);
 }
 
+#if defined(__has_feature)
+#if __has_feature(address_sanitizer) || __has_feature(thread_sanitizer)
+#define OWN_HEAP 0
+#endif
+#elif defined(__SANITIZE_ADDRESS__) || defined(__SANITIZE_THREAD__)
+#define OWN_HEAP 0
+#endif
+#ifndef OWN_HEAP
+#ifdef __GLIBC__
+#define OWN_HEAP 1
+#else
+#define OWN_HEAP 0
+#endif
+#endif
+
+/* Bytes in use from the C library's heap; 0 where another heap stands in for it. */
+static size_t heap_in_use(void)
+{
+#if OWN_HEAP
+    const struct mallinfo2 now = mallinfo2();
+    return now.uordblks + now.hblkhd;
+#else
+    return 0;
+#endif
+}
+
+/*
+ * Slabs of one level against blocks of four, time after time: what is kept stays within the limit.  A cache
+ * that gives up only chunks read in whole grows by one time's chunks, 480 KiB, with every time.
+ */
+static void the_cache_does_not_grow_with_the_times(void **state)
+{
+    enum { MANY = 24, FEW = 2, DEEP = 6, TALL = 100, WIDE = 100, CACHE = 1 << 20 };
+    static const char *const names[4] = {"time", "level", "row", "column"};
+    const size_t along[4] = {MANY, DEEP, TALL, WIDE}, chunk[4] = {1, 4, 30, 30};
+    const stericol_cf_field_axes axes = {.time = 0, .level = 1, .row = 2, .column = 3};
+    const made_format format = {"", NC_NETCDF4, true, true, false};
+    const size_t cells = (size_t)MANY * DEEP * TALL * WIDE;
+    double *values = malloc(cells * sizeof *values);
+    int handle = made_create(&format, "times.nc"), dimension[4], variable, i;
+    stericol_cf_field *field;
+    size_t after_few = 0, bytes, slots, t, l, n;
+    float preemption = 0.0F;
+    const stericol_cf_conversion same = {1.0, 0.0, (double)-INFINITY, (double)INFINITY};
+    watched seen;
+
+    (void)state;
+    assert_non_null(values);
+    for (n = 0; n < cells; n++)
+        values[n] = (double)n;
+    for (i = 0; i < 4; i++)
+        must(nc_def_dim(handle, names[i], along[i], &dimension[i]));
+    must(nc_def_var(handle, "v", NC_DOUBLE, 4, dimension, &variable));
+    must(nc_def_var_chunking(handle, variable, NC_CHUNKED, chunk));
+    must(nc_put_var_double(handle, variable, values));
+    must(nc_close(handle));
+    watch(&seen);
+    stericol_cf_file *file = open_well(&seen, made_path("times.nc"));
+    const stericol_cf_variable *found = stericol_cf_find(file, "v", NULL);
+    assert_int_equal(stericol_cf_field_open(seen.context, file, found, &axes, &same, CACHE, &field),
+                     STERICOL_OK);
+    for (t = 0; t < MANY; t++) {
+        /* The last levels' chunks are cut by the end of the axis, the first ones are left half read. */
+        for (l = 1; l < DEEP - 1; l++) {
+            assert_int_equal(stericol_cf_field_read(seen.context, field, t, l, 1, 0, TALL - 5, values, NULL),
+                             STERICOL_OK);
+            assert_same_number(values[0], (double)((t * DEEP + l) * TALL * WIDE));
+        }
+        if (t + 1 == FEW)
+            after_few = heap_in_use();
+    }
+    const size_t after_many = heap_in_use();
+    if (after_many > after_few + 2 * CACHE)
+        print_error("%zu bytes after %d times, %zu after %d\n", after_few, FEW, after_many, MANY);
+    assert_true(after_many <= after_few + 2 * CACHE);
+    /* 1 is what makes chunks that were read in part stay for ever (H5Pset_cache). */
+    must(nc_get_var_chunk_cache(found->group_handle, found->handle, &bytes, &slots, &preemption));
+    assert_true(bytes <= CACHE);
+    assert_true(preemption > 0.0F && preemption < 1.0F);
+    stericol_cf_field_close(field);
+    stericol_cf_close(file);
+    unwatch(&seen);
+    free(values);
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
@@ -507,6 +594,7 @@ int main(void)
         cmocka_unit_test(a_member_that_is_not_there_is_refused),
         cmocka_unit_test(text_is_no_field),
         cmocka_unit_test(large_slabs_are_read_in_pieces),
+        cmocka_unit_test(the_cache_does_not_grow_with_the_times),
     };
 
     return cmocka_run_group_tests_name("fields", tests, NULL, NULL);
