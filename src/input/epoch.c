@@ -23,8 +23,10 @@ void stericol_epoch_close(stericol_epoch *epoch)
             stericol_input_variable_clear(&epoch->sources[i].variable[j]);
     }
     free(epoch->sources);
-    for (int i = 0; i < STERICOL_INPUT_QUANTITIES; i++)
+    for (int i = 0; i < STERICOL_INPUT_QUANTITIES; i++) {
         free(epoch->states[i].items);
+        stericol_input_judged_free(&epoch->judged[i]);
+    }
     free(epoch->members);
     free(epoch->description);
     stericol_input_sums_free(&epoch->sums);

@@ -84,14 +84,16 @@ static stericol_status read_member(stericol_context *context, stericol_epoch *ep
         reverse_levels(values, box->levels, box->plane);
     for (size_t i = 0; i < box->levels && status == STERICOL_OK; i++) {
         const double *level = values + i * box->plane;
-        const stericol_input_slab slab = {source,    member->step[quantity], box->level0 + i, box->row0,
-                                          box->rows, member->shown.text};
+        const stericol_input_slab slab = {.member = (size_t)(member - epoch->members),
+                                          .level = box->level0 + i,
+                                          .row0 = box->row0,
+                                          .rows = box->rows};
         stericol_cf_tally own = whole;
         if (box->levels > 1)
             count_level(level, box->plane, &own);
         if (tally)
             add_tally(part_of(&tally[i], quantity), &own);
-        status = stericol_input_judge(context, epoch, quantity, &slab, level, box->plane, &own);
+        status = stericol_input_judge(context, epoch, quantity, &slab, level, &own);
     }
     return status;
 }
@@ -298,13 +300,15 @@ bool stericol_epoch_sea_floor(const stericol_epoch *epoch, double *floor)
 
 size_t stericol_epoch_bytes(const stericol_epoch *epoch, size_t levels, size_t rows)
 {
-    size_t points = 0, bytes = 0;
+    size_t points = 0, bytes = 0, kept = 0;
+    if (!stericol_add_sizes(epoch->request.cache_bytes, stericol_input_judged_bytes(epoch, rows), &kept))
+        return SIZE_MAX;
     if (epoch->member_count == 1)
-        return epoch->request.cache_bytes;
+        return kept;
     if (!stericol_multiply_sizes(levels, rows, &points) ||
         !stericol_multiply_sizes(points, epoch->grid.columns, &points) ||
         !stericol_multiply_sizes(points, DOUBLE_ARRAYS * sizeof(double) + sizeof(uint32_t), &bytes) ||
-        !stericol_add_sizes(bytes, epoch->request.cache_bytes, &bytes))
+        !stericol_add_sizes(bytes, kept, &bytes))
         return SIZE_MAX;
     return bytes;
 }

@@ -306,18 +306,28 @@ void stericol_input_terrain_floor(const stericol_input_terrain *terrain, size_t 
 
 /* ---- judge.c: can the values be what they are called? ---- */
 
-/*
- * values[count] of one level as read from `source` (NaN missing, +-INFINITY rejected), and what was met in
- * it.  STERICOL_INPUT when more than a tenth of at least 20 lie outside, when a unit was assumed and any
- * does, or when a salinity can only be a fraction.
- */
+/* What was seen so far of the levels that come in parts: [member][level], made with the first part. */
+typedef struct stericol_input_standing stericol_input_standing;
+typedef struct stericol_input_judged {
+    stericol_input_standing *standings;
+} stericol_input_judged;
+void stericol_input_judged_free(stericol_input_judged *judged);
+/* Memory for that when levels come in bands of `rows` rows; SIZE_MAX when that is too large for size_t. */
+size_t stericol_input_judged_bytes(const stericol_epoch *epoch, size_t rows);
+
+/* Rows row0.. of one level (of the grid) of one member. */
 typedef struct stericol_input_slab {
-    size_t source, step, level, row0, rows; /* level of the grid */
-    const char *when;                       /* the member's text */
+    size_t member, level, row0, rows;
 } stericol_input_slab;
+/*
+ * values[rows][columns] as read (NaN missing, +-INFINITY rejected), and what was met in them.  A level is
+ * judged as a whole, however it is cut into bands of rows: STERICOL_INPUT, as soon as that is certain, when
+ * more than a tenth of at least 20 values lie outside, or when a salinity can only be a fraction; at once
+ * when a unit was assumed and any lies outside.  Rows that come again count once.  STERICOL_MEMORY.
+ */
 stericol_status stericol_input_judge(stericol_context *context, stericol_epoch *epoch,
                                      stericol_input_quantity quantity, const stericol_input_slab *slab,
-                                     const double *values, size_t count, const stericol_cf_tally *tally);
+                                     const double *values, const stericol_cf_tally *tally);
 
 /* ---- load.c: the running arrays of an average ---- */
 
@@ -348,6 +358,7 @@ struct stericol_epoch {
     stericol_input_thickness *thickness;
     stericol_input_terrain *terrain;
     stericol_input_sums sums;
+    stericol_input_judged judged[STERICOL_INPUT_QUANTITIES];
     char *description;
     bool has_dates;
     char first_date[STERICOL_CF_DATE_ROOM], last_date[STERICOL_CF_DATE_ROOM];

@@ -456,6 +456,94 @@ static void test_few_bad_values(void **state)
         "--temperature");
 }
 
+/* 3 of the 30 values of a level outside, no more than a tenth, but all in its first row. */
+static double tenth_bad(size_t t, size_t k, size_t j, size_t i)
+{
+    return k == 1 && j == 0 && i < 3 ? 60.0 : sea_temperature(t, k, j, i);
+}
+
+/* 4 of 30, in the first two rows. */
+static double bad_rows(size_t t, size_t k, size_t j, size_t i)
+{
+    return k == 1 && j < 2 && i < 2 ? 60.0 : sea_temperature(t, k, j, i);
+}
+
+/* Four rows would be fractions (kg/kg), the last one is salinities. */
+static double mostly_fraction(size_t t, size_t k, size_t j, size_t i)
+{
+    return sea_salinity(t, k, j, i) * (j < 4 ? 0.001 : 1.0);
+}
+
+/* Reads one level in bands of `rows` rows, from the first row or from the last; stops at a failure. */
+static stericol_status load_bands(try *one, size_t level, size_t rows, bool upwards)
+{
+    double temperature[SEA_POINTS], salinity[SEA_POINTS];
+    stericol_status status = STERICOL_OK;
+    const size_t bands = (SEA_ROWS + rows - 1) / rows;
+    for (size_t n = 0; n < bands && status == STERICOL_OK; n++) {
+        const size_t row0 = (upwards ? bands - 1 - n : n) * rows;
+        const size_t count = row0 + rows < SEA_ROWS ? rows : SEA_ROWS - row0;
+        status = stericol_epoch_load(one->seen.context, one->epoch, level, 1, row0, count, temperature,
+                                     salinity, NULL);
+    }
+    return status;
+}
+
+/* A level is judged as a whole: whether it is refused, and in which words, is the same however it is cut. */
+static void test_cut_levels(void **state)
+{
+    (void)state;
+    static const struct {
+        sea_value *temperature, *salinity;
+        double scale;
+        const char *message; /* NULL: used */
+    } cases[] = {
+        {tenth_bad, sea_salinity, 1.0, NULL},
+        {sea_temperature, mostly_fraction, 1.0, NULL},
+        {bad_rows, sea_salinity, 1.0,
+         "theta: 4 of 30 values at 20 m (2005-01) cannot be sea temperatures with the unit \"degC\": they "
+         "range from 16.25 to 60 after conversion; correct the units or the packing of the variable, or "
+         "name another with --temperature"},
+        {sea_temperature, sea_salinity, 0.001,
+         "sal: 30 of 30 values at 20 m (2005-01) cannot be salinities with the unit \"1\": they range from "
+         "0.033625 to 0.03475 after conversion; these look like a mass fraction (kg/kg); correct the units "
+         "attribute"},
+    };
+    for (size_t n = 0; n < sizeof cases / sizeof *cases; n++) {
+        sea how = sea_plain("cut.nc");
+        how.temperature.value = cases[n].temperature;
+        how.salinity.value = cases[n].salinity;
+        how.salinity.scale = cases[n].scale;
+        const char *path = sea_write(&how);
+        for (size_t rows = 1; rows <= SEA_ROWS; rows++) {
+            for (int upwards = 0; upwards < 2; upwards++) {
+                try one;
+                try_begin(&one, path);
+                try_open(&one);
+                stericol_status status = load_bands(&one, 1, rows, upwards == 1);
+                if (cases[n].message) {
+                    stericol_text expected = {0};
+                    assert_int_equal(status, STERICOL_INPUT);
+                    stericol_text_format(&expected, "%s: %s", one.paths[0], cases[n].message);
+                    assert_string_equal(stericol_context_message(one.seen.context),
+                                        stericol_text_string(&expected));
+                    stericol_text_free(&expected);
+                } else {
+                    /* Read again, and in bands that overlap, nothing is counted twice. */
+                    assert_int_equal(status, STERICOL_OK);
+                    for (size_t again = 1; again <= SEA_ROWS; again++)
+                        assert_int_equal(load_bands(&one, 1, again, upwards == 0), STERICOL_OK);
+                    for (int times = 0; times < 9; times++)
+                        assert_int_equal(stericol_epoch_load(one.seen.context, one.epoch, 1, 1, 0, 1,
+                                                             (double[SEA_POINTS]){0}, NULL, NULL),
+                                         STERICOL_OK);
+                }
+                try_end(&one);
+            }
+        }
+    }
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
@@ -465,6 +553,7 @@ int main(void)
         cmocka_unit_test(test_casts),      cmocka_unit_test(test_other_files),
         cmocka_unit_test(test_no_times),   cmocka_unit_test(test_grids_differ),
         cmocka_unit_test(test_values),     cmocka_unit_test(test_few_bad_values),
+        cmocka_unit_test(test_cut_levels),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
