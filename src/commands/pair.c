@@ -428,7 +428,7 @@ static stericol_status gather(stericol_pair_work *work, stericol_pair_outcome *o
     for (size_t r = 0; r < regions; r++) {
         outcome->region_area[r] = stericol_region_totals_value(totals, r, stericol_pair_sum_count(pair) - 1);
         for (size_t layer = 0; layer <= layers; layer++) {
-            size_t first = layer * STERICOL_PAIR_SUMS;
+            size_t first = (layers == 1 ? 1 : layer) * STERICOL_PAIR_SUMS; /* see sum_rows() */
 
             outcome->sums[r * (layers + 1) + layer] = (stericol_pair_sums){
                 .total = stericol_region_totals_value(totals, r, first + STERICOL_PAIR_SUM_TOTAL),

@@ -89,7 +89,8 @@ static void sum_rows(void *argument, size_t from, size_t to, size_t worker)
             stericol_regions_row(pair->regions, region, sum->tile->row0 + row, weight);
             for (size_t i = 0; i < columns; i++)
                 weight[i] *= pair->cell_area[grid_at + i];
-            for (size_t layer = 0; layer <= layers; layer++)
+            /* A lone layer is the whole column: one sum serves both. */
+            for (size_t layer = layers == 1 ? 1 : 0; layer <= layers; layer++)
                 sum_layer_row(sum, totals, region, layer, row, weight, value);
             for (size_t i = 0; i < columns; i++)
                 value[i] = is_sea(sum, grid_at + i, row * columns + i) ? 1.0 : (double)NAN;

@@ -120,6 +120,11 @@ stericol_status stericol_session_close(stericol_session *session, stericol_statu
         fputs("stericol: no memory left to begin with\n", stderr);
         return status;
     }
+    /* What fails after an interruption fails because of it. */
+    if (status != STERICOL_OK && status != STERICOL_INTERRUPTED && stericol_interrupted()) {
+        stericol_context_clear(session->context);
+        status = stericol_fail(session->context, STERICOL_INTERRUPTED, NULL, NULL, NULL, "interrupted");
+    }
     if (status != STERICOL_OK) {
         stericol_log_write(session->log, STERICOL_LOG_ERROR, "end",
                            stericol_context_message(session->context),
