@@ -158,8 +158,11 @@ static void add_piece(void *argument, const stericol_pair_piece *piece, size_t i
     parts_of_member(slab->work, piece, work->reference_salinity + at, work->reference_temperature + at,
                     work->salinity + at, work->temperature + at, part);
     for (size_t i = 0; i < piece->count; i++) {
+        /* Without a reference the other epoch has no mean state: no reason to find this one short too. */
+        bool shared = isfinite(work->reference_salinity[at + i] + work->reference_temperature[at + i]);
+
         if (!isfinite(work->salinity[at + i]) || !isfinite(work->temperature[at + i]) ||
-            !isfinite(part[THERMOSTERIC][i]))
+            !isfinite(part[VOLUME][i]) || (shared && !isfinite(part[THERMOSTERIC][i])))
             continue;
         for (size_t p = 0; p < PARTS; p++)
             work->month[p][at + i] += length * part[p][i];
