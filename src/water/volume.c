@@ -115,7 +115,7 @@ static void other_volume(const stericol_water *water, pressures p, size_t count,
         break;
     case STERICOL_EQUATION_TEOS10:
     default:
-        assert(!"an equation of state that is none");
+        assert(false && "an equation of state that is none");
     }
 }
 
