@@ -419,6 +419,20 @@ static stericol_inspect_level *new_levels(size_t count)
     return levels;
 }
 
+/* What is kept of every cell of the grid must fit, however narrow the bands are. */
+static stericol_status check_room(const looking *look)
+{
+    double bytes = (double)look->cells * (sizeof *look->last + sizeof *look->broken + sizeof *look->points);
+    double memory = (double)stericol_session_memory(look->session);
+
+    if (bytes <= memory)
+        return STERICOL_OK;
+    return stericol_fail(
+        look->session->context, STERICOL_MEMORY, stericol_epoch_file(look->inspection->epoch, 0, NULL), NULL,
+        "give a larger --memory", "a grid of %zu by %zu cells takes %.0f MiB, and --memory allows %.0f MiB",
+        look->grid->rows, look->grid->columns, ceil(bytes / 1048576.0), memory / 1048576.0);
+}
+
 stericol_status stericol_inspect_look(stericol_session *session, stericol_inspection *inspection, size_t done,
                                       size_t whole)
 {
@@ -433,6 +447,9 @@ stericol_status stericol_inspect_look(stericol_session *session, stericol_inspec
     look.averaged = stericol_settings_is_set(session->settings, "field-time") ||
                     stericol_settings_is_set(session->settings, "field-step");
     look.member = first_member(inspection->epoch);
+    status = check_room(&look);
+    if (status != STERICOL_OK)
+        return status;
     plan(&look, stericol_session_memory(session) / MEMORY_PART);
     status = looking_new(&look);
     values->levels = new_levels(look.grid->levels);

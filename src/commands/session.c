@@ -110,6 +110,16 @@ stericol_status stericol_session_open(stericol_session *session, const stericol_
     return status;
 }
 
+/* What fails after an interruption fails because of it. */
+static const char *failure_of(const stericol_session *session)
+{
+    const char *message = stericol_context_message(session->context);
+
+    if (stericol_interrupted())
+        return "interrupted";
+    return message[0] != '\0' ? message : stericol_status_text(stericol_context_status(session->context));
+}
+
 stericol_status stericol_session_close(stericol_session *session, stericol_status status)
 {
     stericol_status closing;
@@ -120,14 +130,10 @@ stericol_status stericol_session_close(stericol_session *session, stericol_statu
         fputs("stericol: no memory left to begin with\n", stderr);
         return status;
     }
-    /* What fails after an interruption fails because of it. */
-    if (status != STERICOL_OK && status != STERICOL_INTERRUPTED && stericol_interrupted()) {
-        stericol_context_clear(session->context);
-        status = stericol_fail(session->context, STERICOL_INTERRUPTED, NULL, NULL, NULL, "interrupted");
-    }
+    if (status != STERICOL_OK && stericol_interrupted())
+        status = STERICOL_INTERRUPTED;
     if (status != STERICOL_OK) {
-        stericol_log_write(session->log, STERICOL_LOG_ERROR, "end",
-                           stericol_context_message(session->context),
+        stericol_log_write(session->log, STERICOL_LOG_ERROR, "end", failure_of(session),
                            (stericol_log_field[]){stericol_log_whole("exit_code", status)}, 1);
         stericol_session_print_failure(session);
     } else {
@@ -149,12 +155,8 @@ stericol_status stericol_session_close(stericol_session *session, stericol_statu
 
 void stericol_session_print_failure(const stericol_session *session)
 {
-    const char *message = stericol_context_message(session->context);
-
     stericol_progress_hide(session->progress);
-    if (message[0] == '\0')
-        message = stericol_status_text(stericol_context_status(session->context));
-    fprintf(stderr, "stericol: %s\n", message);
+    fprintf(stderr, "stericol: %s\n", failure_of(session));
 }
 
 stericol_status stericol_session_print(stericol_session *session, const char *text)

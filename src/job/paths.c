@@ -100,24 +100,42 @@ static char *trim(char *line)
     return line;
 }
 
+/* Far more than a path can have; a device or a data file given by mistake stops here. */
+#define LONGEST_LINE ((size_t)65536)
+
+/* The next line without its end; false where the file is at its end, and where `*text` says that this is no
+   text. */
+static bool read_line(FILE *file, char *line, bool *text)
+{
+    size_t length = 0;
+    int c = getc(file);
+
+    if (c == EOF)
+        return false;
+    for (; c != EOF && c != '\n'; c = getc(file)) {
+        if (c == '\0' || length + 1 >= LONGEST_LINE) {
+            *text = false;
+            return false;
+        }
+        line[length++] = (char)c;
+    }
+    line[length] = '\0';
+    return true;
+}
+
 static stericol_status add_lines(stericol_context *context, const char *list, FILE *file,
                                  stericol_paths *paths)
 {
-    char *line = NULL;
-    size_t room = 0;
-    ssize_t length;
-    bool first = true;
+    char *line = malloc(LONGEST_LINE);
+    bool first = true, text = true;
     stericol_status status = STERICOL_OK;
 
+    if (line == NULL)
+        return stericol_fail_memory(context, LONGEST_LINE, "the list of files");
     errno = 0;
-    while (status == STERICOL_OK && (length = getline(&line, &room, file)) >= 0) {
+    while (status == STERICOL_OK && read_line(file, line, &text)) {
         char *path = line;
 
-        if (strlen(line) != (size_t)length) {
-            status = stericol_fail(context, STERICOL_INPUT, list, NULL, "give a text with a path a line",
-                                   "this is no list of files");
-            break;
-        }
         if (first &&
             stericol_starts_with(path, "\xef\xbb\xbf")) /* a byte order mark, as some editors write */
             path += 3;
@@ -126,7 +144,10 @@ static stericol_status add_lines(stericol_context *context, const char *list, FI
         if (*path != '\0' && *path != '#')
             status = add_plain_or_matches(context, list, path, paths);
     }
-    if (status == STERICOL_OK && !feof(file))
+    if (status == STERICOL_OK && !text)
+        status = stericol_fail(context, STERICOL_INPUT, list, NULL, "give a text with a path a line",
+                               "this is no list of files");
+    if (status == STERICOL_OK && ferror(file))
         status = stericol_fail(context, STERICOL_INPUT, list, NULL, "give a text file with a path a line",
                                "the list of files cannot be read: %s", strerror(errno));
     free(line);

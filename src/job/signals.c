@@ -41,7 +41,7 @@ static bool handle(int number)
         return true;
     memset(&action, 0, sizeof action);
     action.sa_handler = remember;
-    action.sa_flags = SA_RESTART;
+    action.sa_flags = 0; /* no SA_RESTART: opening a pipe that nobody writes to must end */
     sigemptyset(&action.sa_mask);
     return sigaction(number, &action, NULL) == 0;
 }

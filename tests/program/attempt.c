@@ -199,7 +199,7 @@ static int await(const attempt *how, pid_t child)
         assert_int_equal(ended, 0);
         if (!sent && how->when(how->folder)) {
             assert_int_equal(kill(child, how->signal), 0);
-            sent = true;
+            sent = !how->again;
         }
         if (time(NULL) > end) {
             kill(-child, SIGKILL);

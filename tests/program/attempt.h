@@ -13,7 +13,8 @@ typedef struct attempt {
     const char *folder;                    /* where it runs */
     const char *output;                    /* a file that standard output goes to; then result.output is "" */
     size_t most_memory, most_file;         /* bytes: address space, size of a file */
-    int signal;                            /* sent once `when` holds */
+    int signal;                            /* sent once `when` holds; `again`: whenever it does */
+    bool again;
     bool (*when)(const char *folder);
     char *lines[ATTEMPT_MOST_LINES]; /* of attempt_add() */
 } attempt;

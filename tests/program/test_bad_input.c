@@ -195,6 +195,8 @@ static void test_files_that_are_none(void **state)
         {"device", 3, {"/dev/zero"}, .options = "--earlier /dev/zero"},
         {"address", 3, {"http"}, .options = "--earlier http://127.0.0.1:1/sea.nc"},
         {"pattern without a file", 3, {"none_"}, .options = "--earlier none_*.nc"},
+        {"list that is a device", 3, {"/dev/zero"}, .options = "--earlier @/dev/zero"},
+        {"list that is a data file", 3, {"a.nc"}, .options = "--earlier @a.nc"},
         {"list that is absent", 3, {"none.txt"}, .options = "--earlier @none.txt"},
         {"classic cut to 3 bytes", 3, {"a.nc"}, .damage = cut_magic},
         {"classic cut at 5 %", 3, {"a.nc"}, .damage = cut_5},

@@ -190,6 +190,11 @@ static void test_claims_of_size(void **state)
         assert_true(refused_well(&result, cases[i].code, (const char *[]){"a.nc", cases[i].part, NULL},
                                  cases[i].part));
         run_free(&result);
+        attempt_add(&how, "inspect a.nc --quiet --memory 256M");
+        result = attempt_run(&how);
+        assert_true(no_report(&result, "inspect"));
+        assert_exit(&result, cases[i].code);
+        run_free(&result);
     }
     run_remove_folder(folder);
 }

@@ -224,6 +224,34 @@ static void test_interruption(void **state)
     run_remove_folder(folder);
 }
 
+static bool once_waiting(const char *folder)
+{
+    static int calls;
+
+    (void)folder;
+    return ++calls % 1000 == 0; /* about milliseconds: long enough to come to the pipe */
+}
+
+/* Nobody writes to the pipe: the program waits, as for any pipe, and can be interrupted; by the second signal
+   at the latest, where the first came before it waited. */
+static void test_interruption_while_waiting(void **state)
+{
+    char *folder = begin(4, 5, 4), path[4096];
+    attempt how = {.folder = folder, .signal = SIGINT, .again = true, .when = once_waiting};
+    run_result result;
+
+    (void)state;
+    snprintf(path, sizeof path, "%s/pipe", folder);
+    assert_int_equal(mkfifo(path, 0600), 0);
+    attempt_add(&how, "scenario --field a.nc --quiet --output out.nc --profile pipe");
+    result = attempt_run(&how);
+    assert_exit(&result, 128 + SIGINT);
+    assert_string_equal(result.errors, "stericol: interrupted\n");
+    assert_false(run_file_exists(folder, "out.nc"));
+    run_free(&result);
+    run_remove_folder(folder);
+}
+
 /* ---- names ---- */
 
 static void test_odd_names(void **state)
@@ -295,6 +323,7 @@ int main(void)
         cmocka_unit_test(test_standard_output_is_full),
         cmocka_unit_test(test_closed_channels),
         cmocka_unit_test(test_interruption),
+        cmocka_unit_test(test_interruption_while_waiting),
         cmocka_unit_test(test_odd_names),
         cmocka_unit_test(test_odd_names_of_nothing),
     };
