@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /*
- * The benchmark: `change` on a quarter-degree pair against reading the same values plainly, in one run, for the layouts and
- * types that files come in.  It makes its data on the spot and asserts nothing.
+ * The benchmark: `change` on a quarter-degree pair against reading the same values plainly, in one run, for
+ * the layouts and types that files come in.  It makes its data on the spot and asserts nothing.
  *
  *   bench STERICOL MAKE_PAIR READ_PLAINLY FOLDER [REPEATS]
  */
@@ -42,7 +42,10 @@ static double run_once(char *const argv[], double *seconds)
     double start = now();
     struct rusage usage;
     int status;
-    pid_t child = fork();
+    pid_t child;
+
+    fflush(stdout); /* or the child would print what is waiting as well */
+    child = fork();
 
     if (child == 0) {
         if (freopen("/dev/null", "w", stdout) == NULL)
@@ -86,9 +89,9 @@ static void make(const char *maker, char *file, const char *layout, const char *
 
 int main(int argc, char **argv)
 {
-    static const char *const cases[][2] = {{"slices", "float"},  {"blocks", "float"},  {"default", "float"},
-                                           {"depth-fastest", "float"}, {"classic", "float"}, {"slices", "short"},
-                                           {"blocks", "short"}};
+    static const char *const cases[][2] = {
+        {"slices", "float"},  {"blocks", "float"}, {"default", "float"}, {"depth-fastest", "float"},
+        {"classic", "float"}, {"slices", "short"}, {"blocks", "short"}};
     int repeats = argc > 5 ? atoi(argv[5]) : 3;
     char output[4096];
 
@@ -98,8 +101,8 @@ int main(int argc, char **argv)
     }
     snprintf(output, sizeof output, "%s/result.nc", argv[4]);
     printf("change on 720 x 1440 x 50, two states of temperature and salinity; medians of %d\n", repeats);
-    printf("%-14s %-6s %9s %9s %7s %9s %7s %9s %9s\n", "layout", "type", "plain s", "1 thread", "ratio", "2 threads",
-           "ratio", "plain MiB", "peak MiB");
+    printf("%-14s %-6s %9s %9s %7s %9s %7s %9s %9s\n", "layout", "type", "plain s", "1 thread", "ratio",
+           "2 threads", "ratio", "plain MiB", "peak MiB");
     for (size_t i = 0; i < sizeof cases / sizeof cases[0]; i++) {
         char file[4096];
         measure plain, ours[2];
@@ -108,13 +111,13 @@ int main(int argc, char **argv)
         make(argv[2], file, cases[i][0], cases[i][1]);
         plain = run((char *[]){argv[3], file, NULL}, repeats);
         for (int t = 0; t < 2; t++)
-            ours[t] = run((char *[]){argv[1], "change", "--earlier", file, "--later", file, "--earlier-step", "1",
-                                     "--later-step", "2", "--threads", t == 0 ? "1" : "2", "--output", output, "--replace",
-                                     "--quiet", NULL},
+            ours[t] = run((char *[]){argv[1], "change", "--earlier", file, "--later", file, "--earlier-step",
+                                     "1", "--later-step", "2", "--threads", t == 0 ? "1" : "2", "--output",
+                                     output, "--replace", "--quiet", NULL},
                           repeats);
-        printf("%-14s %-6s %9.2f %9.2f %7.2f %9.2f %7.2f %9.0f %9.0f\n", cases[i][0], cases[i][1], plain.seconds,
-               ours[0].seconds, ours[0].seconds / plain.seconds, ours[1].seconds, ours[1].seconds / plain.seconds,
-               plain.peak, ours[1].peak);
+        printf("%-14s %-6s %9.2f %9.2f %7.2f %9.2f %7.2f %9.0f %9.0f\n", cases[i][0], cases[i][1],
+               plain.seconds, ours[0].seconds, ours[0].seconds / plain.seconds, ours[1].seconds,
+               ours[1].seconds / plain.seconds, plain.peak, ours[1].peak);
         fflush(stdout);
     }
     unlink(output);

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /*
- * Makes a pair of states on a quarter-degree grid with 50 levels for the benchmark: smooth fields, eddies and full-mantissa
- * noise (the slow case for inflating), land over a third of the surface, a sea floor.
+ * Makes a pair of states on a quarter-degree grid with 50 levels for the benchmark: smooth fields, eddies and
+ * full-mantissa noise (the slow case for inflating), land over a third of the surface, a sea floor.
  *
  *   make_pair FILE LAYOUT TYPE [ROWS COLUMNS LEVELS]
  *   LAYOUT  slices | blocks | default | classic | depth-fastest      TYPE  float | short
@@ -65,7 +65,8 @@ static void fill_level(size_t step, size_t level, int which, float *values)
         for (size_t i = 0; i < columns; i++) {
             double longitude = ((double)i + 0.5) / (double)columns * 2.0 * PI;
             double eddy = sin(40.0 * longitude) * sin(31.0 * latitude + (double)step) * exp(-z / 700.0);
-            double state = which == 0 ? 1.0 + 24.0 * cos(latitude) * exp(-z / 800.0) + 0.4 * eddy + 0.3 * (double)step * exp(-z / 500.0)
+            double state = which == 0 ? 1.0 + 24.0 * cos(latitude) * exp(-z / 800.0) + 0.4 * eddy +
+                                            0.3 * (double)step * exp(-z / 500.0)
                                       : 34.7 + 0.8 * cos(2.0 * latitude) * exp(-z / 600.0) + 0.05 * eddy;
 
             state += (which == 0 ? 2e-3 : 5e-4) * noise(&seed);
@@ -90,7 +91,8 @@ static void put_level(int file, int variable, size_t step, size_t level, int whi
     if (stored == NULL)
         stored = malloc(rows * columns * sizeof *stored);
     for (size_t i = 0; i < rows * columns; i++)
-        stored[i] = values[i] > 1e19f ? SHORT_FILL : (short)lrint(((double)values[i] - OFFSET[which]) / SCALE[which]);
+        stored[i] =
+            values[i] > 1e19f ? SHORT_FILL : (short)lrint(((double)values[i] - OFFSET[which]) / SCALE[which]);
     check(nc_put_vara_short(file, variable, start, count, stored), "values");
 }
 
@@ -117,9 +119,13 @@ static int define_field(int file, const char *name, const int *dimension, int wh
     if (strcmp(layout, "slices") == 0)
         check(nc_def_var_chunking(file, variable, NC_CHUNKED, (size_t[]){1, 1, rows, columns}), name);
     else if (strcmp(layout, "blocks") == 0)
-        check(nc_def_var_chunking(file, variable, NC_CHUNKED, (size_t[]){1, (levels + 1) / 2, (rows + 3) / 4, (columns + 3) / 4}), name);
+        check(nc_def_var_chunking(file, variable, NC_CHUNKED,
+                                  (size_t[]){1, (levels + 1) / 2, (rows + 3) / 4, (columns + 3) / 4}),
+              name);
     else if (depth_fastest)
-        check(nc_def_var_chunking(file, variable, NC_CHUNKED, (size_t[]){1, (rows + 15) / 16, (columns + 15) / 16, levels}), name);
+        check(nc_def_var_chunking(file, variable, NC_CHUNKED,
+                                  (size_t[]){1, (rows + 15) / 16, (columns + 15) / 16, levels}),
+              name);
     return variable;
 }
 

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /*
- * The yardstick: reads every value of temperature and salinity with one NetCDF-C loop, a block of chunks at a time, and does
- * nothing with them.
+ * The yardstick: reads every value of temperature and salinity with one NetCDF-C loop, a block of chunks at a
+ * time, and does nothing with them.
  *
  *   read_plainly FILE
  */
