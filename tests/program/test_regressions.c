@@ -121,8 +121,8 @@ static void test_output_is_an_input(void **state)
         "change --earlier @list.txt --later b.nc --output list.txt",
         "change --earlier bare_a.nc --later bare_b.nc --coordinates a.nc --output a.nc",
         "change --earlier warm_a.nc --later warm_b.nc --background-salinity salt.nc --output salt.nc",
-        "change --earlier reference_a.nc --later reference_b.nc --salinity-anomaly anomaly.nc "
-        "--output anomaly.nc",
+        ("change --earlier reference_a.nc --later reference_b.nc --salinity-anomaly anomaly.nc "
+         "--output anomaly.nc"),
         "scenario --field a.nc --profile profile.txt --output profile.txt",
         "scenario --field a.nc --warming 1 --vertical cells --thickness thick.nc --output thick.nc",
     };
